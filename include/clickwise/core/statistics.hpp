@@ -1,0 +1,27 @@
+// Summary statistics that the whole program shares.
+#pragma once
+
+#include <vector>
+
+namespace clickwise::core {
+
+// The p-quantile (0 <= p <= 1) of the values, straight between order statistics (the default of R
+// and NumPy, type 7 of Hyndman and Fan, The American Statistician 50:361-365, 1996). NaN when
+// empty. Values must not be NaN. O(n).
+double quantile(std::vector<double> values, double p);
+
+double median(std::vector<double> values);
+
+// Two-pass mean and sample standard deviation (n - 1), with the rounding term of the second pass
+// taken out (Chan, Golub and LeVeque, The American Statistician 37:242-247, 1983, eq. 1.7). NaN
+// mean when empty, NaN standard deviation below two values.
+struct MeanAndDeviation {
+  double mean;
+  double deviation;
+};
+MeanAndDeviation mean_and_deviation(const std::vector<double>& values);
+
+// sum d_i d_(i+1) / sum d_i^2 about the mean, NIST StRD's definition. NaN below two values.
+double lag_one_correlation(const std::vector<double>& values);
+
+}  // namespace clickwise::core

@@ -1,0 +1,50 @@
+// From the bike file's damper to its curve at any setting of its adjusters.
+#pragma once
+
+#include <optional>
+#include <string>
+#include <vector>
+
+#include "clickwise/bike/bike.hpp"
+#include "clickwise/damper/law.hpp"
+
+namespace clickwise::damper {
+
+// An adjuster that this damper has. Fewer clicks out = firmer; 0 = closed.
+struct AdjusterRange {
+  bike::Adjuster adjuster = bike::Adjuster::low_speed_compression;
+  int setting = 0;
+  int clicks = 0;
+};
+
+// A damper whose curve is known, or assumed, for every setting.
+class Damper {
+ public:
+  // `end` must carry a damper. `sprung_mass_kg` (of this end) is needed by an assumed damper only.
+  // Throws core::JobError with a plain sentence when the damper cannot be laid out: an assumed one
+  // without the masses and spring it is scaled by.
+  static Damper from(const bike::End& end, std::optional<double> sprung_mass_kg,
+                     const core::Place& place);
+
+  explicit Damper(bike::HydraulicDamper sides, bool assumed = false);
+
+  // The curve at the present settings.
+  Curve curve() const;
+
+  // The curve with one adjuster at another setting, clamped to its range.
+  Curve curve_with(bike::Adjuster adjuster, int setting) const;
+
+  // This damper with one adjuster moved, for chains of changes.
+  Damper with(bike::Adjuster adjuster, int setting) const;
+
+  std::vector<AdjusterRange> adjusters() const;
+  std::optional<AdjusterRange> adjuster(bike::Adjuster name) const;
+  bool assumed() const { return assumed_; }
+  const bike::HydraulicDamper& sides() const { return sides_; }
+
+ private:
+  bike::HydraulicDamper sides_;
+  bool assumed_ = false;
+};
+
+}  // namespace clickwise::damper
