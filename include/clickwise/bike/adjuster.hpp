@@ -15,8 +15,8 @@ enum class Adjuster {
 };
 
 inline constexpr std::array<Adjuster, 4> all_adjusters{
-    Adjuster::low_speed_compression, Adjuster::high_speed_compression,
-    Adjuster::low_speed_rebound, Adjuster::high_speed_rebound};
+    Adjuster::low_speed_compression, Adjuster::high_speed_compression, Adjuster::low_speed_rebound,
+    Adjuster::high_speed_rebound};
 
 constexpr bool acts_in_compression(Adjuster adjuster) {
   return adjuster == Adjuster::low_speed_compression ||

@@ -89,11 +89,11 @@ struct Clicks {
 // slope in N s/m, port in N s^2/m^2. A missing bleed passes nothing (a platform); a missing valve
 // never opens.
 struct HydraulicSide {
-  std::optional<Clicks> bleed;           // or fixed_bleed
+  std::optional<Clicks> bleed;  // or fixed_bleed
   std::optional<double> fixed_bleed_m_s;
-  std::optional<Clicks> valve;           // or fixed_valve
+  std::optional<Clicks> valve;  // or fixed_valve
   std::optional<double> fixed_valve_n;
-  double slope_n_s_m = 0.0;              // required with a valve; > 0
+  double slope_n_s_m = 0.0;  // required with a valve; > 0
   double port_n_s2_m2 = 0.0;
 };
 
@@ -147,19 +147,21 @@ struct End {
   Potentiometer sensor;
   std::optional<Spring> spring;
   std::optional<Damper> damper;
+  core::Place damper_place;  // of its table, for messages
 };
 
 // Aims of the advice, settable in `[aims]`; each has a default from common practice, no source.
 struct Aims {
-  double bottom_outs_per_minute = 0.5;        // at most
-  double travel_mean_share_low = 0.22;        // of the stroke: below it the end rides high
-  double travel_mean_share_high = 0.38;       // above it the end rides deep
-  double travel_used_share = 0.90;            // largest travel at least this share of the stroke
-  double packing_mm_per_hit = 2.0;            // climb of the start travel within a hit train
-  double top_outs_per_minute = 6.0;           // at most
-  double body_damping_low = 0.20;             // damping ratio of the body on this end
-  double body_damping_high = 0.60;
-  double balance_share = 0.06;                // |front - rear| of mean travel over stroke, at most
+  double bottom_outs_per_minute = 0.5;   // at most
+  double travel_mean_share_low = 0.22;   // of the stroke: below it the end rides high
+  double travel_mean_share_high = 0.38;  // above it the end rides deep
+  double travel_used_share = 0.90;       // largest travel at least this share of the stroke
+  double packing_mm_per_hit = 2.0;       // climb of the start travel within a hit train
+  double top_outs_per_minute = 6.0;      // at most
+  double body_damping_low = 0.20;        // damping ratio of the body on this end, at least
+  double harsh_force_ratio = 3.0;        // damper force at p95 over static load, at most
+  double held_share = 0.15;              // of riding time held still by a platform, at most
+  double balance_share = 0.06;           // |front - rear| of mean travel over stroke, at most
 };
 
 struct Bike {

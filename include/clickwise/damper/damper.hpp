@@ -19,7 +19,7 @@ struct AdjusterRange {
 
 // A damper whose curve is known, or assumed, for every setting.
 class Damper {
- public:
+public:
   // `end` must carry a damper. `sprung_mass_kg` (of this end) is needed by an assumed damper only.
   // Throws core::JobError with a plain sentence when the damper cannot be laid out: an assumed one
   // without the masses and spring it is scaled by.
@@ -42,7 +42,7 @@ class Damper {
   bool assumed() const { return assumed_; }
   const bike::HydraulicDamper& sides() const { return sides_; }
 
- private:
+private:
   bike::HydraulicDamper sides_;
   bool assumed_ = false;
 };

@@ -15,10 +15,10 @@ namespace clickwise::damper {
 // Contract section 3. (1) is solved in closed form: below the knee F_p = 100 (v / B)^2; above it
 // s = sqrt(F_p) is the positive root of s^2 / S + (B / 10) s - (F_o / S + v) = 0.
 struct Law {
-  double bleed_m_s = 0.0;        // B; 0: no bleed, a platform: no motion below F_o
-  double opening_n = 0.0;        // F_o
-  double slope_n_s_m = 0.0;      // S; 0: no valve (it never opens)
-  double port_n_s2_m2 = 0.0;     // P
+  double bleed_m_s = 0.0;     // B; 0: no bleed, a platform: no motion below F_o
+  double opening_n = 0.0;     // F_o
+  double slope_n_s_m = 0.0;   // S; 0: no valve (it never opens)
+  double port_n_s2_m2 = 0.0;  // P
 
   bool has_valve() const { return slope_n_s_m > 0.0; }
 

@@ -19,7 +19,7 @@ struct Reach {
   bike::Adjuster adjuster = bike::Adjuster::low_speed_compression;
   double low_j = 0.0;
   double high_j = 0.0;
-  double low_share = 0.0;   // 0 when the damper did no work there
+  double low_share = 0.0;  // 0 when the damper did no work there
   double high_share = 0.0;
 };
 
