@@ -1,0 +1,72 @@
+// Travel and shaft velocity, with a known sigma, from noisy readings on a uniform time base; no
+// filter is chosen by hand.
+//
+// The readings are y_i = x(t_i) + e_i with white e of standard deviation n. A bank of quintic
+// smoothing splines with cut-offs f_0 > f_1 > ... has the zero-phase gains
+//   H_k(w) = 1 / (1 + (sin(w/2) / sin(pi f_k/rate))^6)                                 (3.1)
+// and velocity is their derivative D(w) H_k(w) (D: nine-point central difference, exact to order
+// 8). Neighbouring members differ by the bands b_k = v_k - v_(k+1), whose noise variance s_k^2
+// follows from n, D and H in closed form. The estimate is
+//   v = v_last + sum_k g_k(t) b_k,   g_k = e_k / (e_k + s_k^2),                        (3.2)
+// with e_k(t) the band's signal power around t: Wiener's gain, taken locally (N. Wiener,
+// Extrapolation, Interpolation, and Smoothing of Stationary Time Series, 1949). e_k is measured
+// twice: first as the band's power less s_k^2, then on the bands that the first gains let through.
+// Travel takes the same gains. sigma^2 is the Wiener error sum_k g_k s_k^2.
+#pragma once
+
+#include <optional>
+#include <span>
+#include <string>
+#include <vector>
+
+namespace clickwise::signal {
+
+inline constexpr double longest_span_s = 1.0;
+
+struct SmootherOptions {
+  // Quadratic Savitzky-Golay fits over this span (s, above 0, at most longest_span_s) in place of
+  // the adaptive smoother. Their sigma holds the noise but not what the fit flattens.
+  std::optional<double> fixed_span_s;
+
+  // Decay time, to both sides, over which the power of a band is averaged (s, > 0); slow bands take
+  // longer.
+  double memory_s = 0.033;
+};
+
+// What one channel's ride says about its noise, and what will therefore be done with it.
+struct SmootherModel {
+  double rate_hz = 0.0;
+  double noise_m = 0.0;                  // rms noise of a reading, white
+  double rest_velocity_noise_m_s = 0.0;  // rms error of the velocity while nothing moves
+  double memory_s = 0.0;                 // see SmootherOptions
+  int span_samples = 0;                  // odd span of the fixed fit; 0: adaptive
+};
+
+// All series have one value a reading.
+struct Smoothed {
+  std::vector<double> position_m;
+  std::vector<double> velocity_m_s;
+  std::vector<double> sigma_m_s;  // one standard deviation of the velocity's error
+  double cutoff_hz = 0.0;         // half-gain frequency of the travel, median over the stretch
+};
+
+// The noise of one channel from its unbroken stretches (readings in m, all finite, one rate).
+// Stretches may have any length, none included; below about a second in all the noise is poorly
+// known. Throws std::invalid_argument on a NaN or infinite reading, a rate or an option that is
+// not above 0. O(n log n).
+SmootherModel fit_smoother(const std::vector<std::span<const double>>& stretches_m, double rate_hz,
+                           const SmootherOptions& options = {});
+
+// The shortest stretch that has a velocity (samples).
+std::size_t shortest_stretch(const SmootherModel& model);
+
+// Travel and velocity of one unbroken stretch. Ends: the stretch is continued by odd reflection,
+// and sigma grows towards them. Reversing the stretch in time reverses position and sigma, and
+// turns the sign of velocity. Throws std::invalid_argument on readings that are not finite or
+// fewer than shortest_stretch(). O(n).
+Smoothed smooth(std::span<const double> readings_m, const SmootherModel& model);
+
+// One sentence for the report: what was used and what the noise is.
+std::string describe(const SmootherModel& model);
+
+}  // namespace clickwise::signal
