@@ -1,0 +1,27 @@
+// The symptoms of a ride, from its figures and their sampling uncertainty.
+#pragma once
+
+#include <vector>
+
+#include "clickwise/advice/end_ride.hpp"
+#include "clickwise/advice/symptom.hpp"
+#include "clickwise/bike/bike.hpp"
+
+namespace clickwise::advice {
+
+// All symptoms of all ends that cross their aim, most severe first. Sampling uncertainty: shares
+// and means by bootstrap over blocks of 5 s of riding (seeded), rates of events by the gamma
+// posterior of a Poisson rate with Jeffreys' prior. An end with under 10 s of counted riding time
+// shows none.
+std::vector<Symptom> find_symptoms(const std::vector<EndRide>& rides, const bike::Aims& aims,
+                                   unsigned seed);
+
+// Whether a bottom-out of this end counts as hard: met above the compression split.
+bool is_hard(const EndRide& ride, const run::EndStop& bottom_out);
+
+// Damping ratio of the body on this end: the energy-equivalent linear damping of compression and
+// rebound at a shaft speed of 0.15 m/s, over 2 sqrt(k m) at the mean riding travel, both at the
+// wheel. Empty when damper, spring or masses are not known.
+std::optional<double> body_damping_ratio(const EndRide& ride);
+
+}  // namespace clickwise::advice

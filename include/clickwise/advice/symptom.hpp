@@ -1,0 +1,46 @@
+// Symptoms: what a ride shows to be off its aim, each a number with its own uncertainty.
+#pragma once
+
+#include <string>
+#include <string_view>
+#include <vector>
+
+#include "clickwise/bike/adjuster.hpp"
+
+namespace clickwise::advice {
+
+enum class SymptomKind {
+  hard_bottoming,    // bottom-outs met above the compression split, per minute of riding
+  slow_bottoming,    // bottom-outs met at or below it, per minute
+  rides_deep,        // mean travel as a share of the stroke, too large
+  rides_high,        // the same, too small
+  unused_travel,     // largest travel as a share of the stroke, too small
+  packs_down,        // climb of the start travel from hit to hit of a train, mm per hit
+  returns_too_fast,  // top-outs per minute of riding
+  harsh,             // 95th percentile of the damper's compression force over the static load
+  held_by_platform,  // share of riding time an end stands still while the other one moves
+  wallows,           // damping ratio of the body on this end, too small
+};
+
+// "hard bottoming", for screens and the JSON's `symptom`
+std::string_view words(SymptomKind kind);
+
+// The unit of the symptom's value, as it is shown: "per minute", "% of stroke", "mm per hit", "".
+std::string_view unit(SymptomKind kind);
+
+// A figure beside its aim. Severity is the distance beyond the aim in units of the figure's own
+// standard error (block bootstrap over the ride); 0 when the aim is met.
+struct Symptom {
+  SymptomKind kind = SymptomKind::hard_bottoming;
+  bike::EndName end = bike::EndName::front;
+  double value = 0.0;  // in the unit of unit(kind); shares as 0 to 100 for "%"
+  double low = 0.0;    // 90 % interval of the value
+  double high = 0.0;
+  double aim = 0.0;  // the bound that is crossed, same unit
+  double severity = 0.0;
+
+  // Share of the sampling distribution that lies beyond the aim, 0.5 to 1 when the aim is crossed.
+  double certainty() const;
+};
+
+}  // namespace clickwise::advice

@@ -1,0 +1,78 @@
+#include "rules.hpp"
+
+#include <map>
+
+namespace clickwise::advice {
+
+namespace {
+
+using bike::Adjuster;
+
+constexpr bool firmer = true;
+constexpr bool softer = false;
+
+const std::map<SymptomKind, std::vector<Move>> moves{
+    {SymptomKind::hard_bottoming,
+     {{Adjuster::high_speed_compression, firmer}, {Adjuster::low_speed_compression, firmer}}},
+    {SymptomKind::packs_down,
+     {{Adjuster::low_speed_rebound, softer}, {Adjuster::high_speed_rebound, softer}}},
+    {SymptomKind::returns_too_fast,
+     {{Adjuster::low_speed_rebound, firmer}, {Adjuster::high_speed_rebound, firmer}}},
+    {SymptomKind::harsh,
+     {{Adjuster::high_speed_compression, softer}, {Adjuster::low_speed_compression, softer}}},
+    {SymptomKind::held_by_platform, {{Adjuster::low_speed_compression, softer}}},
+    {SymptomKind::wallows,
+     {{Adjuster::low_speed_compression, firmer}, {Adjuster::low_speed_rebound, firmer}}},
+    {SymptomKind::unused_travel,
+     {{Adjuster::high_speed_compression, softer}, {Adjuster::low_speed_compression, softer}}},
+};
+
+const std::map<SymptomKind, Receiver> receivers{
+    {SymptomKind::hard_bottoming,
+     {"volume",
+      "a smaller air chamber or a longer bumper takes more energy at the end of the stroke"}},
+    {SymptomKind::slow_bottoming,
+     {"spring",
+      "it goes through its travel slowly, where the damper does little: more rate or "
+      "pressure, or a smaller air chamber, comes first"}},
+    {SymptomKind::rides_deep,
+     {"spring", "mean travel follows the spring: check sag, then rate or pressure"}},
+    {SymptomKind::rides_high,
+     {"spring", "mean travel follows the spring: check sag, then a softer rate or less pressure"}},
+    {SymptomKind::unused_travel,
+     {"spring",
+      "the last of the travel is never used: check the calibration, then sag, then the "
+      "air chamber's volume"}},
+    {SymptomKind::packs_down,
+     {"service",
+      "the rebound adjusters do not reach it: have the damper looked at by a qualified "
+      "service"}},
+    {SymptomKind::returns_too_fast,
+     {"service",
+      "the rebound adjusters do not reach it: have the damper looked at by a qualified "
+      "service"}},
+    {SymptomKind::harsh,
+     {"tyre", "the compression adjusters do not reach it: look at tyre pressure first"}},
+    {SymptomKind::held_by_platform,
+     {"service",
+      "no adjuster opens the damper enough: friction or the damper itself needs a "
+      "qualified service"}},
+    {SymptomKind::wallows,
+     {"service",
+      "the adjusters do not give enough damping: have the damper looked at by a "
+      "qualified service"}},
+};
+
+}  // namespace
+
+const std::vector<Move>& moves_for(SymptomKind kind) {
+  static const std::vector<Move> none;
+  const auto found = moves.find(kind);
+  return found == moves.end() ? none : found->second;
+}
+
+const Receiver& receiver_of(SymptomKind kind) {
+  return receivers.at(kind);
+}
+
+}  // namespace clickwise::advice

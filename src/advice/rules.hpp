@@ -1,0 +1,28 @@
+// The signs of physics: which moves of which adjusters can ease a symptom, and who it is for when
+// none can. All rules: common practice of the trade, no source.
+#pragma once
+
+#include <string>
+#include <vector>
+
+#include "clickwise/advice/symptom.hpp"
+
+namespace clickwise::advice {
+
+struct Move {
+  bike::Adjuster adjuster = bike::Adjuster::low_speed_compression;
+  bool firmer = false;  // towards closed
+};
+
+// Moves that ease the symptom, the most direct first; empty when it is not a job for an adjuster.
+const std::vector<Move>& moves_for(SymptomKind kind);
+
+struct Receiver {
+  std::string to;
+  std::string why;
+};
+
+// Who a symptom is handed to when no adjuster reaches it.
+const Receiver& receiver_of(SymptomKind kind);
+
+}  // namespace clickwise::advice

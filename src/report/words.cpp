@@ -1,0 +1,76 @@
+#include "words.hpp"
+
+#include <fmt/format.h>
+
+#include <cmath>
+#include <map>
+
+namespace clickwise::report {
+
+std::string duration_words(double seconds) {
+  if (seconds < 10.0) return fmt::format("{:.1f} s", seconds);
+  const auto whole = static_cast<long long>(std::llround(seconds));
+  return fmt::format("{}:{:02}", whole / 60, whole % 60);
+}
+
+std::string part_words(bike::EndName end, bool capital) {
+  std::string words(bike::part(end));
+  if (capital) words[0] = static_cast<char>(words[0] - 'a' + 'A');
+  return words;
+}
+
+std::string step_words(const advice::Step& step) {
+  const int clicks = std::abs(step.to - step.from);
+  return fmt::format("{} {}: from {} to {} clicks out ({} click{} {})", part_words(step.end),
+                     bike::words(step.adjuster), step.from, step.to, clicks, clicks == 1 ? "" : "s",
+                     step.to < step.from ? "firmer" : "softer");
+}
+
+std::string confidence_words(double confidence) {
+  const char* const words = confidence >= 0.95   ? "very sure"
+                            : confidence >= 0.85 ? "sure"
+                                                 : "fairly sure";
+  return fmt::format("{} ({:.0f} %)", words, 100.0 * confidence);
+}
+
+std::string prediction_words(const advice::Prediction& prediction) {
+  static const std::map<std::string, std::string> names{{"bottom_outs", "bottom-outs"}};
+  const auto name = names.find(prediction.metric);
+  return fmt::format("{}: {:.3g} now, {:.3g} then (90 % bounds {:.3g} to {:.3g})",
+                     name == names.end() ? prediction.metric : name->second, prediction.now,
+                     prediction.then, prediction.low, prediction.high);
+}
+
+std::string symptom_words(const advice::Symptom& symptom) {
+  return fmt::format("{} {}: {:.3g} {} (aim {:.3g})", part_words(symptom.end),
+                     advice::words(symptom.kind), symptom.value, advice::unit(symptom.kind),
+                     symptom.aim);
+}
+
+std::string split_source_words(workflow::SplitSource source) {
+  switch (source) {
+    case workflow::SplitSource::asked:
+      return "as asked";
+    case workflow::SplitSource::bike_file:
+      return "from the bike file";
+    case workflow::SplitSource::knee:
+      return "the knee of the damper's curve";
+    case workflow::SplitSource::fallback:
+      break;
+  }
+  return "our default: no damper curve is known";
+}
+
+std::vector<std::string> fault_words(const run::FaultLedger& faults) {
+  std::vector<std::string> sentences;
+  for (const run::Fault& fault : faults.faults()) {
+    std::string kind(run::to_string(fault.kind));
+    if (kind == "time_restart") kind = "time restart";
+    sentences.push_back(fmt::format("{}: {} {}{}, {:.2f} s left out; {}", kind, fault.count,
+                                    fault.channel.empty() ? "on the clock" : "in ", fault.channel,
+                                    fault.seconds, run::advice(fault.kind)));
+  }
+  return sentences;
+}
+
+}  // namespace clickwise::report

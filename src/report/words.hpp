@@ -1,0 +1,36 @@
+// Phrases that every report uses, so that a thing is called the same everywhere.
+#pragma once
+
+#include <string>
+#include <vector>
+
+#include "clickwise/advice/advise.hpp"
+#include "clickwise/workflow/review.hpp"
+
+namespace clickwise::report {
+
+// "2:05" for 125 s, "0:07.4" below ten seconds
+std::string duration_words(double seconds);
+
+// "fork", "shock"; "Fork", "Shock"
+std::string part_words(bike::EndName end, bool capital = false);
+
+// "fork high-speed compression: from 6 to 4 clicks out (2 firmer)"
+std::string step_words(const advice::Step& step);
+
+// "0.93: likely" and the like
+std::string confidence_words(double confidence);
+
+// "bottom-outs: 4 now, 1 then (90 % bounds 0 to 3)"
+std::string prediction_words(const advice::Prediction& prediction);
+
+// "packs down 3.1 mm per hit (aim 2)"
+std::string symptom_words(const advice::Symptom& symptom);
+
+// "asked for", "the knee of the damper curve", ...
+std::string split_source_words(workflow::SplitSource source);
+
+// One sentence a fault: "gap: 2 on the clock, 1.2 s left out; ..."
+std::vector<std::string> fault_words(const run::FaultLedger& faults);
+
+}  // namespace clickwise::report

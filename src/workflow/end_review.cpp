@@ -1,0 +1,126 @@
+#include "end_review.hpp"
+
+#include <cmath>
+
+#include "clickwise/core/units.hpp"
+#include "clickwise/events/end_stops.hpp"
+#include "clickwise/events/hit_trains.hpp"
+
+namespace clickwise::workflow {
+
+namespace {
+
+// Where nothing is known of the damper; a choice, not a standard: no published value exists.
+constexpr double fallback_split_m_s = 0.5;
+// A knee outside these is no use as a split (a platform has its knee at 0).
+constexpr double least_knee_m_s = 0.05;
+constexpr double most_knee_m_s = 3.0;
+
+struct ChosenSplit {
+  double speed_m_s;
+  SplitSource source;
+};
+
+ChosenSplit choose_split(const std::optional<double>& asked, const std::optional<double>& in_file,
+                         const std::optional<double>& knee_m_s) {
+  if (asked) return {*asked, SplitSource::asked};
+  if (in_file) return {*in_file, SplitSource::bike_file};
+  if (knee_m_s && *knee_m_s >= least_knee_m_s && *knee_m_s <= most_knee_m_s)
+    return {*knee_m_s, SplitSource::knee};
+  return {fallback_split_m_s, SplitSource::fallback};
+}
+
+// The sprung share as felt at the shaft near the end of the stroke, kg; 0 when not known.
+double moving_mass_kg(const bike::Bike& bike, const bike::End& end, bike::EndName name,
+                      double travel_m) {
+  const double ratio = end.ratio(travel_m);
+  return bike.sprung_mass_kg(name).value_or(0.0) * ratio * ratio;
+}
+
+damper::RideDensity density_of(const bands::VelocityBands& bands) {
+  return {bands.density.compression, bands.density.rebound};
+}
+
+std::vector<AdjusterReview> review_adjusters(const damper::Damper& damper,
+                                             const bands::VelocityBands& bands) {
+  std::vector<AdjusterReview> adjusters;
+  for (const damper::AdjusterRange& range : damper.adjusters()) {
+    const double split_m_s = bike::acts_in_compression(range.adjuster) ? bands.compression.split_m_s
+                                                                       : bands.rebound.split_m_s;
+    adjusters.push_back(
+        {range, damper::reach(damper, range.adjuster, density_of(bands), split_m_s)});
+  }
+  return adjusters;
+}
+
+}  // namespace
+
+std::optional<damper::Damper> damper_of(const bike::Bike& bike, bike::EndName name) {
+  if (!bike.end(name)->damper) return std::nullopt;
+  return damper::Damper::from(*bike.end(name), bike.sprung_mass_kg(name), {bike.file});
+}
+
+EndReview review_end(const bike::Bike& bike, const RideEnd& ride, const bike::Split& asked,
+                     const std::optional<damper::Damper>& damper) {
+  const bike::End& end = *bike.end(ride.name);
+  const run::Motion& motion = ride.motion;
+  std::optional<double> compression_knee;
+  std::optional<double> rebound_knee;
+  bands::ForceCurve force_n;
+  if (damper) {
+    const damper::Curve curve = damper->curve();
+    compression_knee = curve.compression.knee_m_s();
+    rebound_knee = curve.rebound.knee_m_s();
+    force_n = [curve](double velocity_m_s) { return curve.force_n(velocity_m_s); };
+  }
+  const ChosenSplit compression =
+      choose_split(asked.compression_m_s, end.split.compression_m_s, compression_knee);
+  const ChosenSplit rebound = choose_split(asked.rebound_m_s, end.split.rebound_m_s, rebound_knee);
+
+  EndReview review;
+  review.name = ride.name;
+  review.source = motion.source;
+  review.stroke_m = end.stroke_m;
+  review.riding_s = ride.riding_s;
+  review.velocity_noise_m_s = motion.velocity_noise_m_s;
+  review.cutoff_hz = motion.cutoff_hz;
+  review.smoothing = motion.smoothing;
+  review.bands = bands::velocity_bands(motion, ride.counted,
+                                       {compression.speed_m_s, rebound.speed_m_s}, force_n);
+  review.compression_split_source = compression.source;
+  review.rebound_split_source = rebound.source;
+  review.travel = bands::travel_use(motion, ride.counted, end.stroke_m);
+  review.bottom_outs = events::bottom_outs(
+      motion, ride.counted,
+      {end.stroke_m, end.bottom_out_within_m, moving_mass_kg(bike, end, ride.name, end.stroke_m)});
+  events::TopOutOptions top_out;
+  top_out.moving_mass_kg = moving_mass_kg(bike, end, ride.name, 0.0);
+  review.top_outs = events::top_outs(motion, ride.counted, top_out);
+  events::HitTrainOptions train;
+  train.stroke_m = end.stroke_m;
+  review.trains = events::hit_trains(motion, ride.counted, train);
+  if (damper) {
+    review.adjusters = review_adjusters(*damper, review.bands);
+    review.damper_assumed = damper->assumed();
+  }
+  return review;
+}
+
+advice::EndRide advice_view(const bike::Bike& bike, const RideEnd& ride, const EndReview& review,
+                            const std::optional<damper::Damper>& damper) {
+  advice::EndRide view;
+  view.name = ride.name;
+  view.end = &*bike.end(ride.name);
+  view.motion = &ride.motion;
+  view.counted = &ride.counted;
+  view.bottom_outs = &review.bottom_outs;
+  view.top_outs = &review.top_outs;
+  view.trains = &review.trains;
+  view.damper = damper ? &*damper : nullptr;
+  view.sprung_mass_kg = bike.sprung_mass_kg(ride.name);
+  view.compression_split_m_s = review.bands.compression.split_m_s;
+  view.rebound_split_m_s = review.bands.rebound.split_m_s;
+  return view;
+}
+
+}  // namespace clickwise::workflow

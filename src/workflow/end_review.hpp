@@ -1,0 +1,22 @@
+// One end of a ride reviewed, up to but without the advice.
+#pragma once
+
+#include <optional>
+
+#include "clickwise/advice/end_ride.hpp"
+#include "clickwise/workflow/review.hpp"
+
+namespace clickwise::workflow {
+
+// The end's damper; empty when the bike file has none. Throws core::JobError when it has one that
+// cannot be laid out.
+std::optional<damper::Damper> damper_of(const bike::Bike& bike, bike::EndName name);
+
+EndReview review_end(const bike::Bike& bike, const RideEnd& ride, const bike::Split& asked,
+                     const std::optional<damper::Damper>& damper);
+
+// The view of it that the advice takes; points into its arguments.
+advice::EndRide advice_view(const bike::Bike& bike, const RideEnd& ride, const EndReview& review,
+                            const std::optional<damper::Damper>& damper);
+
+}  // namespace clickwise::workflow

@@ -1,0 +1,60 @@
+#include "clickwise/workflow/review.hpp"
+
+#include "clickwise/bike/bike_file.hpp"
+#include "clickwise/core/parallel.hpp"
+#include "clickwise/events/airtime.hpp"
+#include "end_review.hpp"
+
+namespace clickwise::workflow {
+
+namespace {
+
+// p95 speeds are compared at the wheel, each by the ratio at its mean travel.
+double wheel_p95_ratio(const bike::Bike& bike, const EndReview& front, const EndReview& rear,
+                       const bands::Band& front_band, const bands::Band& rear_band) {
+  return front_band.p95_m_s * bike.front->ratio(front.travel.mean_m) /
+         (rear_band.p95_m_s * bike.rear->ratio(rear.travel.mean_m));
+}
+
+FrontRear front_beside_rear(const Ride& ride, const std::vector<EndReview>& ends) {
+  const EndReview& front = ends[0];
+  const EndReview& rear = ends[1];
+  FrontRear both;
+  both.mean_travel_difference =
+      front.travel.mean_m / front.stroke_m - rear.travel.mean_m / rear.stroke_m;
+  both.compression_p95_ratio =
+      wheel_p95_ratio(ride.bike, front, rear, front.bands.compression, rear.bands.compression);
+  both.rebound_p95_ratio =
+      wheel_p95_ratio(ride.bike, front, rear, front.bands.rebound, rear.bands.rebound);
+  both.airtimes = events::airtimes(
+      {{&ride.ends[0].motion, ride.ends[0].counted}, {&ride.ends[1].motion, ride.ends[1].counted}});
+  return both;
+}
+
+}  // namespace
+
+Review review(const ReviewOptions& options) {
+  const Ride ride = load_ride(options.ride);
+  std::vector<std::optional<damper::Damper>> dampers;
+  for (const RideEnd& end : ride.ends) dampers.push_back(damper_of(ride.bike, end.name));
+
+  Review result;
+  result.bike_name = ride.bike.name;
+  result.log = ride.log;
+  result.notes = ride.notes;
+  result.ends.resize(ride.ends.size());
+  core::parallel_for(ride.ends.size(), [&](std::size_t i) {
+    result.ends[i] =
+        review_end(ride.bike, ride.ends[i], options.splits.end(ride.ends[i].name), dampers[i]);
+  });
+  if (ride.ends.size() == 2) result.front_rear = front_beside_rear(ride, result.ends);
+
+  std::vector<advice::EndRide> views;
+  for (std::size_t i = 0; i < ride.ends.size(); ++i)
+    views.push_back(advice_view(ride.bike, ride.ends[i], result.ends[i], dampers[i]));
+  result.advice = advice::advise(views, ride.bike.aims);
+  result.missing = bike::what_is_missing(ride.bike);
+  return result;
+}
+
+}  // namespace clickwise::workflow
