@@ -1,0 +1,35 @@
+// A starter bike file for a log that has none, for the user to complete.
+#pragma once
+
+#include <optional>
+#include <string>
+#include <vector>
+
+#include "clickwise/bike/bike.hpp"
+
+namespace clickwise::bike {
+
+// A numeric column of the log and the range of its readings.
+struct StarterColumn {
+  ColumnRef column;
+  double least = 0.0;
+  double most = 0.0;
+};
+
+// What is known from the log alone.
+struct StarterFacts {
+  std::string log_name;
+  std::optional<ColumnRef> time;
+  std::string time_unit = "s";            // s, ms or us
+  std::optional<ColumnRef> speed;         // wheel speed
+  std::string speed_unit = "km/h";        // m/s or km/h
+  std::vector<StarterColumn> candidates;  // columns that could be travel, likeliest first
+};
+
+// Text of a bike file. What only the user can know is the text "?", told in a comment beside it;
+// once every "?" is replaced by a number the file reads, and until then the reader refuses the
+// first one left. Columns named after a fork or a front go to [front], after a shock or a rear to
+// [rear]; otherwise the first two in order. Without a candidate, [front] asks for its column too.
+std::string starter_bike(const StarterFacts& facts);
+
+}  // namespace clickwise::bike

@@ -1,0 +1,36 @@
+// The parts of a bike file, one reader a table. Each throws core::InputError where it stands.
+#pragma once
+
+#include <optional>
+#include <string_view>
+
+#include "clickwise/bike/bike.hpp"
+#include "clickwise/io/toml.hpp"
+
+namespace clickwise::bike {
+
+// A quantity that may be written in either of two units, never in both.
+struct TwoUnits {
+  std::string_view key;  // in the usual unit
+  double si_per_unit;
+  std::string_view trade_key;
+  double si_per_trade_unit;
+  io::Limits limits;  // in the usual unit
+};
+
+// The quantity in SI; empty when neither key is there.
+std::optional<double> read_either(const io::TomlTable& table, const TwoUnits& quantity);
+double need_either(const io::TomlTable& table, const TwoUnits& quantity);
+
+TwoUnits mass(std::string_view key, std::string_view trade_key, double least_kg, double most_kg,
+              double example_kg);
+
+ColumnRef read_column(const io::TomlTable& table);
+LogFormat read_log(const io::TomlTable& root);
+Aims read_aims(const io::TomlTable& root);
+Potentiometer read_sensor(const io::TomlTable& end);
+Spring read_spring(const io::TomlTable& spring, double stroke_m);
+Damper read_damper(const io::TomlTable& damper);
+End read_end(const io::TomlTable& end);
+
+}  // namespace clickwise::bike
