@@ -1,0 +1,50 @@
+// A logger that never was: from the truth to the readings and the text it would have written.
+#pragma once
+
+#include <cstdint>
+#include <functional>
+#include <string>
+#include <string_view>
+#include <vector>
+
+#include "clickwise/bike/bike.hpp"
+#include "clickwise/run/fault.hpp"
+#include "clickwise/sim/ride.hpp"
+
+namespace clickwise::sim {
+
+// Damage done on purpose. Times count from the log's first sample.
+struct PlannedFault {
+  run::FaultKind kind = run::FaultKind::gap;
+  double at_s = 0.0;
+  double seconds = 0.0;    // of gap, stuck, saturated, missing
+  std::string channel;     // a column of the log; empty for gap, time_restart, truncated
+  double counts = 1500.0;  // height of a spike; its sign is kept, the converter's range clips it
+};
+
+struct LoggerPlan {
+  double rate_hz = 1000.0;
+  int adc_bits = 12;
+  double noise_counts = 0.0;  // one standard deviation, before rounding
+  double jitter = 0.0;        // of a period: samples fall within +- this much of their turn
+  int time_decimals = 0;      // of the stamps, in the bike file's time unit
+  double clock_start = 0.0;   // first stamp, in that unit
+  bool wrap_u32 = false;      // stamps are taken modulo 2^32 of that unit
+  std::vector<std::string> extra_columns;  // further readings that nobody asked for: slow noise
+  std::vector<PlannedFault> faults;
+  std::uint64_t seed = 1;
+};
+
+// Writes the log of the ride as comma-separated text with a header (none where the bike file names
+// every column by number), piece by piece into `sink`. Columns: the bike file's time, sensors and
+// speed, then the extra ones. Readings are the calibration turned round, with noise, rounded, and
+// clipped to the converter's range; the truth is read between its samples by its own velocity.
+// Throws core::JobError when a fault names a channel that the log does not have, or the columns
+// cannot be laid out.
+void write_log(const bike::Bike& bike, const LoggerPlan& plan, const Truth& truth,
+               const std::function<void(std::string_view)>& sink);
+
+// Reading of a travel: the sensor's calibration turned round, straight on beyond its ends.
+double reading_of(const bike::Potentiometer& sensor, double travel_m);
+
+}  // namespace clickwise::sim
