@@ -1,0 +1,120 @@
+// Readings that stand still where no suspension would: saturated and stuck.
+#include <algorithm>
+#include <array>
+#include <cmath>
+#include <limits>
+
+#include "fault_search.hpp"
+
+namespace clickwise::motion {
+
+namespace {
+
+constexpr std::array<double, 9> converter_ends{0.0,     255.0,   1023.0,   4095.0, 8191.0,
+                                               16383.0, 65535.0, -32768.0, 32767.0};
+constexpr double outside_at_converter_end_share = 0.01;  // of the stroke
+constexpr std::size_t fewest_at_converter_end = 3;
+constexpr double held_flat_s = 20e-3;  // a turning point beyond the stroke is shorter
+constexpr double moving_share = 0.10;  // of its whole range: what another channel moves
+
+double metres_outside(const FaultSearch& search, std::size_t i) {
+  return std::max(search.travel_m[i] - search.range.stroke_m, -search.travel_m[i]);
+}
+
+bool outside(const FaultSearch& search, std::size_t i) {
+  return metres_outside(search, i) > search.options.held_outside_share * search.range.stroke_m;
+}
+
+// The run of samples from `begin` that stay within `band` of its first reading.
+std::size_t flat_until(const FaultSearch& search, std::size_t begin, std::size_t end, double band) {
+  const auto readings = search.readings();
+  std::size_t i = begin + 1;
+  while (i < end && std::abs(readings[i] - readings[begin]) <= band) ++i;
+  return i;
+}
+
+bool held_at_converter_end(const FaultSearch& search, std::size_t begin, std::size_t end) {
+  return std::ranges::find(converter_ends, search.readings()[begin]) != converter_ends.end() &&
+         metres_outside(search, begin) > outside_at_converter_end_share * search.range.stroke_m &&
+         flat_until(search, begin, end, 0.0) - begin >= fewest_at_converter_end;
+}
+
+bool held_outside(const FaultSearch& search, std::size_t begin, std::size_t end) {
+  const auto& x = search.range.travel_m.x();
+  const double band = search.options.flat_share * (x.back() - x.front());
+  return outside(search, begin) &&
+         flat_until(search, begin, end, band) - begin >= search.samples(held_flat_s, 4);
+}
+
+run::Stretch padded(run::Stretch stretch, run::Stretch within) {
+  return {stretch.begin > within.begin ? stretch.begin - 1 : stretch.begin,
+          std::min(stretch.end + 1, within.end)};
+}
+
+// Does any other channel move over [begin, end)?
+class OtherChannels {
+public:
+  explicit OtherChannels(const FaultSearch& search) : search_(search) {
+    for (const run::Channel& channel : search.recording.channels)
+      whole_.push_back(range(channel, 0, channel.readings.size()));
+  }
+
+  bool move(std::size_t begin, std::size_t end) const {
+    const auto& channels = search_.recording.channels;
+    for (std::size_t c = 0; c < channels.size(); ++c)
+      if (c != search_.channel && whole_[c] > 0.0 &&
+          range(channels[c], begin, end) > moving_share * whole_[c])
+        return true;
+    return false;
+  }
+
+private:
+  static double range(const run::Channel& channel, std::size_t begin, std::size_t end) {
+    double low = std::numeric_limits<double>::infinity(), high = -low;
+    for (std::size_t i = begin; i < end; ++i) {
+      if (!std::isfinite(channel.readings[i])) continue;
+      low = std::min(low, channel.readings[i]);
+      high = std::max(high, channel.readings[i]);
+    }
+    return high > low ? high - low : 0.0;
+  }
+
+  const FaultSearch& search_;
+  std::vector<double> whole_;
+};
+
+}  // namespace
+
+Masked mask_saturated(FaultSearch& search) {
+  Masked masked;
+  for (const run::Stretch& run : search.usable_runs()) {
+    for (std::size_t i = run.begin; i < run.end; ++i) {
+      if (!held_at_converter_end(search, i, run.end) && !held_outside(search, i, run.end)) continue;
+      run::Stretch held{i, flat_until(search, i, run.end, 0.0)};
+      while (held.begin > run.begin && outside(search, held.begin - 1)) --held.begin;
+      while (held.end < run.end && outside(search, held.end)) ++held.end;
+      mask(search, padded(held, run), masked);
+      i = held.end;
+    }
+  }
+  return masked;
+}
+
+Masked mask_stuck(FaultSearch& search) {
+  Masked masked;
+  const OtherChannels others(search);
+  for (const run::Stretch& run : search.usable_runs()) {
+    for (std::size_t i = run.begin; i < run.end;) {
+      const run::Stretch held{i, flat_until(search, i, run.end, 0.0)};
+      const double limit_s = search.travel_m[i] < search.options.extended_m
+                                 ? search.options.stuck_extended_s
+                                 : search.options.stuck_s;
+      if (held.end - held.begin >= search.samples(limit_s, 3) && others.move(held.begin, held.end))
+        mask(search, padded(held, run), masked);
+      i = held.end;
+    }
+  }
+  return masked;
+}
+
+}  // namespace clickwise::motion
