@@ -14,7 +14,7 @@ namespace {
 
 using std::numbers::pi;
 
-constexpr std::size_t last = bank_size - 1;  // the slowest member, which is always let through
+constexpr Eigen::Index last = bank_size - 1;  // the slowest member, which is always let through
 constexpr std::size_t chunk_samples = 16384;
 constexpr double end_fit_s = 0.012;
 
@@ -24,11 +24,25 @@ constexpr std::array<double, 4> difference{4.0 / 5.0, -1.0 / 5.0, 4.0 / 105.0, -
 constexpr std::size_t reach = difference.size();
 
 // Against the chance that noise alone looks like power: what is taken off, in noise variances.
-constexpr double first_toll = 1.5;
+constexpr float first_toll = 1.5F;
 // The second average looks closer, since most of the noise is gone.
 constexpr double second_share = 0.25;
+// Whether anything moves is judged over a longer time: when, on average over alert_s, no band has
+// more power than noise would give it by alert_from deviations of that power, all gains are 0; they
+// are fully open alert_width later. Otherwise chance bursts would be the velocity of a bike at
+// rest.
+constexpr double alert_s = 0.12;
+constexpr float alert_from = 6.0F;
+constexpr float alert_width = 3.0F;
+constexpr float alert_cap = 18.0F;
+
 // An average runs over at least this many periods of its band's upper cut-off.
-constexpr double periods = 0.22;
+constexpr double periods = 0.4;
+
+// Averages are cut off after this many decay times.
+constexpr double decays = 14.0;
+
+constexpr float tiny = 1e-30F;  // keeps 0/0 of a silent channel at a gain of 0
 
 double difference_gain(double w) {
   double gain = 0.0;
@@ -38,13 +52,8 @@ double difference_gain(double w) {
   return gain;
 }
 
-LaneAverage average(const Lanes& cutoff_hz, double memory_s, double share, double rate_hz) {
-  LaneAverage result{};
-  for (std::size_t k = 0; k < bank_size; ++k) {
-    const double decay_s = share * std::max(memory_s, periods / cutoff_hz[k]);
-    result.keep[k] = std::exp(-1.0 / (decay_s * rate_hz));
-  }
-  return result;
+BandLanes keep(const Lanes& decay_s, double rate_hz) {
+  return (-1.0 / (decay_s * rate_hz)).exp().cast<float>();
 }
 
 }  // namespace
@@ -55,91 +64,126 @@ struct AdaptiveSmoother::Chunk {
   std::size_t count = 0;
   std::vector<double> readings;  // with the margins
   std::vector<Lanes> travel;     // members of the bank
-  std::vector<Lanes> band;       // b_k; the last lane: v_last
-  std::vector<Lanes> gain;       // g_k; the last lane: 1
+  std::vector<BandLanes> band;   // b_k; the last lane: v_last
+  std::vector<BandLanes> power;  // of b_k, half averaged
+  std::vector<float> alert;      // 0 at rest ... 1 when something moves
 };
 
 AdaptiveSmoother::AdaptiveSmoother(double rate_hz, double noise_m, double memory_s)
-    : rate_hz_(rate_hz),
-      bank_(rate_hz),
-      first_average_(average(bank_.cutoff_hz(), memory_s, 1.0, rate_hz)),
-      second_average_(average(bank_.cutoff_hz(), memory_s, second_share, rate_hz)) {
-  constexpr int steps = 4096;
-  const double scale = std::pow(noise_m * rate_hz, 2.0) / steps;
+    : rate_hz_(rate_hz), bank_(rate_hz), alert_keep_(std::exp(-1.0 / (alert_s * rate_hz))) {
+  const Lanes decay_s = (periods / bank_.cutoff_hz()).max(memory_s);
+  first_keep_ = keep(decay_s, rate_hz);
+  second_keep_ = keep(second_share * decay_s, rate_hz);
+  find_variances(noise_m);
+  const double longest_s = std::max(decay_s.maxCoeff(), alert_s);
+  margin_ = bank_.settling_samples() + reach +
+            static_cast<std::size_t>(std::ceil(decays * longest_s * rate_hz));
+}
+
+void AdaptiveSmoother::find_variances(double noise_m) {
+  constexpr int steps = 2048;
+  Lanes band = Lanes::Zero();
+  Lanes step = Lanes::Zero();
   for (int i = 0; i < steps; ++i) {
     const double w = pi * (i + 0.5) / steps;
-    const double d = std::pow(difference_gain(w), 2.0) * scale;
-    for (std::size_t k = 0; k < bank_size; ++k) {
-      const double faster = bank_.gain(k, w);
-      const double slower = k == last ? 0.0 : bank_.gain(k + 1, w);
-      if (k != last) band_variance_[k] += d * std::pow(faster - slower, 2.0);
-      step_variance_[k] += d * (faster - slower);
+    const double d = std::pow(difference_gain(w) * rate_hz_, 2.0) / steps;
+    double faster = bank_.gain(0, w);
+    for (Eigen::Index k = 0; k < last; ++k) {
+      const double slower = bank_.gain(k + 1, w);
+      band[k] += d * std::pow(faster - slower, 2.0);
+      step[k] += d * (faster - slower);
+      faster = slower;
     }
+    step[last] += d * faster;
+    slowest_noise_gain_ += d * faster * faster;
   }
-  const double slowest_s = std::max(memory_s, periods / bank_.cutoff_hz()[last]);
-  margin_ = bank_.settling_samples() + reach +
-            static_cast<std::size_t>(std::ceil(16.0 * slowest_s * rate_hz));
+  slowest_noise_gain_ = std::sqrt(slowest_noise_gain_);
+  band_variance_ = (band * noise_m * noise_m).cast<float>();
+  step_variance_ = (step * noise_m * noise_m).cast<float>();
 }
 
-void AdaptiveSmoother::estimate_bands(Chunk& chunk) const {
+// The bank's backward pass, the bands behind it and, behind them, the backward half of the first
+// average of their power.
+void AdaptiveSmoother::split_into_bands(Chunk& chunk) const {
   const std::size_t n = chunk.readings.size();
-  bank_.run(chunk.readings, chunk.travel);
+  SplineBank::Pass forward(Lanes::Constant(chunk.readings.front()));
   for (std::size_t i = 0; i < n; ++i) {
-    Lanes velocity{};
+    chunk.travel[i] = bank_.step(forward, Lanes::Constant(chunk.readings[i]));
+  }
+  SplineBank::Pass backward(chunk.travel.back());
+  BandLanes average = BandLanes::Zero();
+  Lanes slower = Lanes::Zero();
+  for (std::size_t i = n; i-- > 0;) {
+    chunk.travel[i] = bank_.step(backward, chunk.travel[i]);
+    const std::size_t centre = i + reach;
+    if (centre + reach >= n) continue;
+    Lanes velocity = Lanes::Zero();
     for (std::size_t j = 1; j <= reach; ++j) {
-      const Lanes& after = chunk.travel[std::min(i + j, n - 1)];
-      const Lanes& before = chunk.travel[i >= j ? i - j : 0];
-      const double c = difference[j - 1] * rate_hz_;
-      for (std::size_t k = 0; k < bank_size; ++k) velocity[k] += c * (after[k] - before[k]);
+      velocity +=
+          difference[j - 1] * rate_hz_ * (chunk.travel[centre + j] - chunk.travel[centre - j]);
     }
-    Lanes& band = chunk.band[i];
-    for (std::size_t k = 0; k < last; ++k) band[k] = velocity[k] - velocity[k + 1];
-    band[last] = velocity[last];
+    slower.head<last>() = velocity.tail<last>();
+    const BandLanes band = (velocity - slower).cast<float>();
+    const BandLanes power = band.square();
+    average = power + first_keep_ * (average - power);
+    chunk.band[centre] = band;
+    chunk.power[centre] = average;
   }
 }
 
-void AdaptiveSmoother::find_gains(Chunk& chunk) const {
-  constexpr double tiny = 1e-300;  // keeps 0/0 of a silent channel at a gain of 0
-  const std::size_t n = chunk.readings.size();
-  for (std::size_t i = 0; i < n; ++i) {
-    for (std::size_t k = 0; k < bank_size; ++k) {
-      chunk.gain[i][k] = chunk.band[i][k] * chunk.band[i][k];
-    }
-  }
-  first_average_.run(chunk.gain);
-  for (std::size_t i = 0; i < n; ++i) {
-    for (std::size_t k = 0; k < bank_size; ++k) {
-      const double power = chunk.gain[i][k] + tiny;
-      const double gain = std::max(0.0, 1.0 - first_toll * band_variance_[k] / power);
-      chunk.gain[i][k] = std::pow(gain * chunk.band[i][k], 2.0);
-    }
-  }
-  second_average_.run(chunk.gain);
-  for (std::size_t i = 0; i < n; ++i) {
-    for (std::size_t k = 0; k < bank_size; ++k) {
-      const double power = chunk.gain[i][k];
-      chunk.gain[i][k] = power / (power + band_variance_[k] + tiny);
-    }
-    chunk.gain[i][last] = 1.0;
+// The forward half of the first average; the power that its gains let through; and the forward half
+// of the second average. On the way: how far the bands' power is above that of noise.
+void AdaptiveSmoother::find_first_gains(Chunk& chunk) const {
+  // An exponential average to both sides sees about 4 decay times, with 2 B T degrees of freedom.
+  const Lanes decay_s = -1.0 / (first_keep_.cast<double>().log() * rate_hz_);
+  Lanes width_hz = bank_.cutoff_hz();
+  width_hz.head<last>() -= bank_.cutoff_hz().tail<last>();
+  const BandLanes noise = band_variance_ + tiny;
+  BandLanes freedom = (4.0 * decay_s * width_hz).sqrt().cast<float>();
+  freedom[last] = 0.0F;
+  const BandLanes scale = freedom / noise;
+  const BandLanes toll = first_toll * band_variance_;
+  BandLanes first = BandLanes::Zero();
+  BandLanes second = BandLanes::Zero();
+  for (std::size_t i = reach; i + reach < chunk.power.size(); ++i) {
+    first = chunk.power[i] + first_keep_ * (first - chunk.power[i]);
+    chunk.alert[i] = std::min((first * scale - freedom).maxCoeff(), alert_cap);
+    const BandLanes gain = (1.0F - toll / (first + tiny)).max(0.0F);
+    const BandLanes power = (gain * chunk.band[i]).square();
+    second = power + second_keep_ * (second - power);
+    chunk.power[i] = second;
   }
 }
 
-void AdaptiveSmoother::combine(const Chunk& chunk, Smoothed& out) const {
-  for (std::size_t j = 0; j < chunk.count; ++j) {
-    const std::size_t i = j + margin_;
+void AdaptiveSmoother::find_alert(Chunk& chunk) const {
+  double state = 0.0;
+  const auto step = [&](float& value) {
+    state = value + alert_keep_ * (state - value);
+    value = static_cast<float>(state);
+  };
+  for (float& value : chunk.alert) step(value);
+  for (std::size_t i = chunk.alert.size(); i-- > 0;) {
+    step(chunk.alert[i]);
+    chunk.alert[i] = std::clamp((chunk.alert[i] - alert_from) / alert_width, 0.0F, 1.0F);
+  }
+}
+
+// The backward half of the second average, the gains, and what they let through.
+void AdaptiveSmoother::combine(Chunk& chunk, Smoothed& out) const {
+  const BandLanes noise = band_variance_ + tiny;
+  BandLanes second = BandLanes::Zero();
+  Lanes slower = Lanes::Zero();
+  for (std::size_t i = chunk.power.size() - reach; i-- > margin_;) {
+    second = chunk.power[i] + second_keep_ * (second - chunk.power[i]);
+    if (i >= margin_ + chunk.count) continue;
+    BandLanes gain = chunk.alert[i] * second / (second + noise);
+    gain[last] = 1.0F;
     const Lanes& travel = chunk.travel[i];
-    const Lanes& gain = chunk.gain[i];
-    double position = travel[last];
-    double velocity = chunk.band[i][last];
-    double variance = step_variance_[last];
-    for (std::size_t k = 0; k < last; ++k) {
-      position += gain[k] * (travel[k] - travel[k + 1]);
-      velocity += gain[k] * chunk.band[i][k];
-      variance += gain[k] * step_variance_[k];
-    }
-    out.position_m[chunk.first + j] = position;
-    out.velocity_m_s[chunk.first + j] = velocity;
-    out.sigma_m_s[chunk.first + j] = std::sqrt(variance);
+    slower.head<last>() = travel.tail<last>();
+    const std::size_t at = chunk.first + i - margin_;
+    out.position_m[at] = (gain.cast<double>() * (travel - slower)).sum();
+    out.velocity_m_s[at] = static_cast<double>((gain * chunk.band[i]).sum());
+    out.sigma_m_s[at] = std::sqrt(static_cast<double>((gain * step_variance_).sum()));
   }
 }
 
@@ -159,13 +203,15 @@ Smoothed AdaptiveSmoother::smooth(std::span<const double> readings_m) const {
     chunk.readings.resize(padded);
     chunk.travel.resize(padded);
     chunk.band.resize(padded);
-    chunk.gain.resize(padded);
+    chunk.power.resize(padded);
+    chunk.alert.assign(padded, 0.0F);
     for (std::size_t i = 0; i < padded; ++i) {
       chunk.readings[i] = continued.at(static_cast<std::ptrdiff_t>(first + i) -
                                        static_cast<std::ptrdiff_t>(margin_));
     }
-    estimate_bands(chunk);
-    find_gains(chunk);
+    split_into_bands(chunk);
+    find_first_gains(chunk);
+    find_alert(chunk);
     combine(chunk, out);
   }
   return out;

@@ -9,28 +9,38 @@
 
 namespace clickwise::signal {
 
+// Bands need less precision than the readings: their errors do not build up.
+using BandLanes = Eigen::Array<float, bank_size, 1>;
+
 class AdaptiveSmoother {
 public:
   AdaptiveSmoother(double rate_hz, double noise_m, double memory_s);
 
   Smoothed smooth(std::span<const double> readings_m) const;
 
+  // Standard deviation of the velocity where no band is let through, for readings of this noise.
+  double rest_velocity_noise(double noise_m) const { return noise_m * slowest_noise_gain_; }
+
   static constexpr std::size_t shortest = 9;  // samples: the derivative's span
 
 private:
   struct Chunk;
 
-  void estimate_bands(Chunk& chunk) const;
-  void find_gains(Chunk& chunk) const;
-  void combine(const Chunk& chunk, Smoothed& out) const;
+  void find_variances(double noise_m);
+  void split_into_bands(Chunk& chunk) const;
+  void find_first_gains(Chunk& chunk) const;
+  void find_alert(Chunk& chunk) const;
+  void combine(Chunk& chunk, Smoothed& out) const;
 
   double rate_hz_;
   SplineBank bank_;
-  LaneAverage first_average_;   // of the bands' power
-  LaneAverage second_average_;  // of what the first gains let through
-  Lanes band_variance_{};       // noise of b_k, (m/s)^2; the last lane: 0
-  Lanes step_variance_{};       // Wiener error of b_k at a gain of 1; the last lane: of v_last
-  std::size_t margin_;          // samples that a chunk needs beside it
+  double alert_keep_;        // share of a running average kept from sample to sample: of the alert,
+  BandLanes first_keep_;     // of the bands' power,
+  BandLanes second_keep_;    // and of what the first gains let through
+  BandLanes band_variance_;  // noise of b_k, (m/s)^2; the last lane: 0
+  BandLanes step_variance_;  // Wiener error of b_k at a gain of 1; the last lane: of v_last
+  double slowest_noise_gain_ = 0.0;  // standard deviation of v_last for readings of noise 1
+  std::size_t margin_;               // samples that a chunk needs beside it
 };
 
 }  // namespace clickwise::signal

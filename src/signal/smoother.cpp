@@ -4,7 +4,6 @@
 
 #include <algorithm>
 #include <cmath>
-#include <random>
 #include <stdexcept>
 
 #include "adaptive.hpp"
@@ -71,18 +70,10 @@ Smoothed smooth_fixed(std::span<const double> readings_m, const SmootherModel& m
   return out;
 }
 
-// What the smoother makes of a channel that holds nothing but the noise of its resting readings.
 double rest_velocity_noise(const SmootherModel& model, double rest_noise_m) {
   if (model.span_samples > 0) return rest_noise_m * noise_gain(coefficients(quadratic(model, 1)));
-  constexpr std::size_t samples = 16384;
-  std::mt19937_64 random(1);
-  std::normal_distribution<double> normal(0.0, rest_noise_m);
-  std::vector<double> readings(samples);
-  for (double& y : readings) y = rest_noise_m > 0.0 ? normal(random) : 0.0;
-  const Smoothed smoothed = smooth(readings, model);
-  double sum = 0.0;
-  for (const double v : smoothed.velocity_m_s) sum += v * v;
-  return std::sqrt(sum / static_cast<double>(samples));
+  return AdaptiveSmoother(model.rate_hz, model.noise_m, model.memory_s)
+      .rest_velocity_noise(rest_noise_m);
 }
 
 }  // namespace

@@ -16,7 +16,7 @@ constexpr double fastest_hz = 300.0;    // no shaft motion of a bike lies above 
 constexpr double fastest_share = 0.45;  // of the rate
 constexpr double slowest_hz = 4.0;
 constexpr double slowest_share = 1.0 / 20.0;  // of the fastest, at low rates
-constexpr double settled = 1e-9;              // share of a transient left
+constexpr double settled = 1e-8;              // share of a transient left
 
 // The root inside the unit circle of z + 1/z = 2 - s.
 Complex pole(Complex s) {
@@ -32,27 +32,14 @@ double difference_gain(double cutoff_hz, double rate_hz) {
 
 }  // namespace
 
-void LaneAverage::run(std::span<Lanes> values) const {
-  if (values.empty()) return;
-  Lanes state = values.front();
-  const auto step = [&](Lanes& value) {
-    for (std::size_t k = 0; k < bank_size; ++k) {
-      state[k] = value[k] + keep[k] * (state[k] - value[k]);
-      value[k] = state[k];
-    }
-  };
-  for (Lanes& value : values) step(value);
-  for (std::size_t i = values.size(); i-- > 0;) step(values[i]);
-}
-
 // The denominator 1 + lambda (2 - z - 1/z)^3 has its roots where s = 2 - z - 1/z is a cube root of
 // -1/lambda = -c^3: one real, one conjugate pair.
-SplineBank::SplineBank(double rate_hz) {
+SplineBank::SplineBank(double rate_hz) : rate_hz_(rate_hz) {
   const double top = std::min(fastest_hz, fastest_share * rate_hz);
   const double bottom = std::min(slowest_hz, slowest_share * top);
   const double step = std::pow(bottom / top, 1.0 / static_cast<double>(bank_size - 1));
   double slowest_pole = 0.0;
-  for (std::size_t k = 0; k < bank_size; ++k) {
+  for (Eigen::Index k = 0; k < bank_size; ++k) {
     cutoff_hz_[k] = top * std::pow(step, static_cast<double>(k));
     const double c = std::pow(difference_gain(cutoff_hz_[k], rate_hz), 2.0);
     const double real = pole(-c).real();
@@ -67,36 +54,9 @@ SplineBank::SplineBank(double rate_hz) {
   settling_ = static_cast<std::size_t>(std::ceil(std::log(settled) / std::log(slowest_pole)));
 }
 
-double SplineBank::gain(std::size_t k, double w) const {
-  const double c = (1.0 - first_[k] - second_[k]);
-  const Complex z = std::polar(1.0, -w);
-  const Complex forward =
-      real_gain_[k] / (1.0 - pole_[k] * z) * c / (1.0 - first_[k] * z - second_[k] * z * z);
-  return std::norm(forward);
-}
-
-void SplineBank::pass(std::span<Lanes> values, bool backward) const {
-  Lanes u = backward ? values.back() : values.front();
-  Lanes w1 = u;
-  Lanes w2 = u;
-  const std::size_t n = values.size();
-  for (std::size_t i = 0; i < n; ++i) {
-    Lanes& value = values[backward ? n - 1 - i : i];
-    for (std::size_t k = 0; k < bank_size; ++k) {
-      u[k] = real_gain_[k] * value[k] + pole_[k] * u[k];
-      const double w = pair_gain_[k] * u[k] + first_[k] * w1[k] + second_[k] * w2[k];
-      w2[k] = w1[k];
-      w1[k] = w;
-      value[k] = w;
-    }
-  }
-}
-
-void SplineBank::run(std::span<const double> input, std::span<Lanes> output) const {
-  for (std::size_t i = 0; i < input.size(); ++i) output[i].fill(input[i]);
-  if (input.empty()) return;
-  pass(output, false);
-  pass(output, true);
+double SplineBank::gain(Eigen::Index k, double w) const {
+  const double s = 2.0 * std::sin(0.5 * w) / difference_gain(cutoff_hz_[k], rate_hz_);
+  return 1.0 / (1.0 + std::pow(s * s, 3));
 }
 
 }  // namespace clickwise::signal

@@ -2,22 +2,13 @@
 // filters: once forward and once back, all members side by side.
 #pragma once
 
-#include <array>
+#include <Eigen/Core>
 #include <cstddef>
-#include <span>
-#include <vector>
 
 namespace clickwise::signal {
 
-inline constexpr std::size_t bank_size = 12;
-using Lanes = std::array<double, bank_size>;
-
-// Two-sided exponential averages, one decay time a lane, in place.
-struct LaneAverage {
-  Lanes keep;  // share of the running average kept from sample to sample, 0 <= keep < 1
-
-  void run(std::span<Lanes> values) const;
-};
+inline constexpr Eigen::Index bank_size = 12;
+using Lanes = Eigen::Array<double, bank_size, 1>;
 
 class SplineBank {
 public:
@@ -26,20 +17,30 @@ public:
 
   const Lanes& cutoff_hz() const { return cutoff_hz_; }
 
-  // The members' outputs for the (padded) input; transients of both ends die out within
-  // settling_samples().
-  void run(std::span<const double> input, std::span<Lanes> output) const;
+  // One sample of a recursive pass: a forward pass over the readings, then a backward pass over its
+  // results, give the members' outputs. A transient dies out within settling_samples().
+  struct Pass {
+    explicit Pass(const Lanes& start) : u(start), w1(start), w2(start) {}
+    Lanes u, w1, w2;
+  };
+  template <typename Value>
+  const Lanes& step(Pass& pass, const Value& value) const {
+    pass.u = real_gain_ * value + pole_ * pass.u;
+    const Lanes w = pair_gain_ * pass.u + first_ * pass.w1 + second_ * pass.w2;
+    pass.w2 = pass.w1;
+    pass.w1 = w;
+    return pass.w1;
+  }
 
   std::size_t settling_samples() const { return settling_; }
 
   // Gain of member k at w radians a sample.
-  double gain(std::size_t k, double w) const;
+  double gain(Eigen::Index k, double w) const;
 
 private:
-  void pass(std::span<Lanes> values, bool backward) const;
-
-  Lanes cutoff_hz_{};
-  Lanes pole_{}, real_gain_{};  // of the real pole
+  double rate_hz_;
+  Lanes cutoff_hz_;
+  Lanes pole_, real_gain_;  // of the real pole
   Lanes first_{}, second_{},
       pair_gain_{};  // of the pair: w_i = pair_gain u_i + first w_-1 + second w_-2
   std::size_t settling_ = 0;
