@@ -44,7 +44,7 @@ struct LoggerPlan {
 void write_log(const bike::Bike& bike, const LoggerPlan& plan, const Truth& truth,
                const std::function<void(std::string_view)>& sink);
 
-// Reading of a travel: the sensor's calibration turned round, straight on beyond its ends.
-double reading_of(const bike::Potentiometer& sensor, double travel_m);
+// The sensor's calibration turned round: readings over travel in m, straight on beyond its ends.
+core::Polyline readings_over_travel(const bike::Potentiometer& sensor);
 
 }  // namespace clickwise::sim

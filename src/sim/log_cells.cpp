@@ -1,0 +1,110 @@
+#include "log_cells.hpp"
+
+#include <algorithm>
+#include <charconv>
+#include <cmath>
+
+namespace clickwise::sim {
+
+namespace {
+
+constexpr double u32_range = 4294967296.0;
+
+void append_fixed(std::string& text, double value, int decimals) {
+  char buffer[64];
+  const auto end =
+      std::to_chars(buffer, buffer + sizeof buffer, value, std::chars_format::fixed, decimals);
+  text.append(buffer, end.ptr);
+}
+
+void append_whole(std::string& text, double value) {
+  char buffer[32];
+  const auto end = std::to_chars(buffer, buffer + sizeof buffer, std::llround(value));
+  text.append(buffer, end.ptr);
+}
+
+// Between two samples: the cubic with their travels and velocities.
+double travel_at(const EndTruth& end, double rate_hz, double t_s) {
+  const double last = static_cast<double>(end.travel_m.size() - 1);
+  const double u = std::clamp(t_s * rate_hz, 0.0, last);
+  const auto i = std::min(static_cast<std::size_t>(u), end.travel_m.size() - 2);
+  const double w = u - static_cast<double>(i);
+  const double a = end.travel_m[i];
+  const double rise = end.travel_m[i + 1] - a;
+  const double va = end.velocity_m_s[i] / rate_hz;
+  const double vb = end.velocity_m_s[i + 1] / rate_hz;
+  return a + w * (va + w * (3.0 * rise - 2.0 * va - vb + w * (va + vb - 2.0 * rise)));
+}
+
+bool within(const PlannedFault& fault, double at_s) {
+  return at_s >= fault.at_s && at_s < fault.at_s + fault.seconds;
+}
+
+}  // namespace
+
+LogCells::LogCells(const bike::Bike& bike, const LoggerPlan& plan, const Truth& truth,
+                   const LogColumn& column, std::uint64_t stream)
+    : bike_(bike), plan_(plan), truth_(truth), kind_(column.kind), chance_(plan.seed, stream) {
+  if (kind_ == ColumnKind::front) readings_ = readings_over_travel(bike.front->sensor);
+  if (kind_ == ColumnKind::rear) readings_ = readings_over_travel(bike.rear->sensor);
+  std::copy_if(plan.faults.begin(), plan.faults.end(), std::back_inserter(faults_),
+               [&](const PlannedFault& fault) { return fault.channel == column.name; });
+  struck_.assign(faults_.size(), false);
+}
+
+double LogCells::reading(const LogRow& row) {
+  if (kind_ == ColumnKind::speed) {
+    const auto i = static_cast<std::size_t>(row.sampled_s * truth_.rate_hz);
+    const double speed = truth_.progress.speed_m_s[std::min(i, truth_.samples() - 1)];
+    return speed / bike_.log.speed->metres_per_second_per_unit;
+  }
+  if (kind_ == ColumnKind::extra) {
+    wander_ = 0.999 * wander_ + 5.0 * chance_.normal();
+    return 1000.0 + wander_;
+  }
+  const auto name = kind_ == ColumnKind::front ? bike::EndName::front : bike::EndName::rear;
+  const double travel = travel_at(*truth_.end(name), truth_.rate_hz, row.sampled_s);
+  return readings_(travel) + plan_.noise_counts * chance_.normal();
+}
+
+std::optional<double> LogCells::damaged(double reading, double at_s) {
+  const double full = std::exp2(plan_.adc_bits) - 1.0;
+  const bool converted = kind_ != ColumnKind::speed;
+  double value = converted ? std::clamp(std::round(reading), 0.0, full) : reading;
+  bool stuck = false;
+  for (std::size_t i = 0; i < faults_.size(); ++i) {
+    const PlannedFault& fault = faults_[i];
+    if (fault.kind == run::FaultKind::missing && within(fault, at_s)) return std::nullopt;
+    if (fault.kind == run::FaultKind::saturated && within(fault, at_s)) value = full;
+    if (fault.kind == run::FaultKind::stuck && within(fault, at_s)) {
+      stuck = true;
+      value = stuck_.value_or(value);
+    }
+    if (fault.kind == run::FaultKind::spike && !struck_[i] && at_s >= fault.at_s) {
+      struck_[i] = true;
+      value = std::clamp(value + fault.counts, 0.0, full);
+    }
+  }
+  stuck_ = stuck ? std::optional(value) : std::nullopt;
+  return value;
+}
+
+void LogCells::append(std::string& text, const LogRow& row) {
+  if (kind_ == ColumnKind::time) {
+    double stamp = plan_.clock_start + row.clock_s / bike_.log.time->seconds_per_unit;
+    if (plan_.wrap_u32) stamp = std::fmod(stamp, u32_range);
+    if (plan_.time_decimals == 0)
+      append_whole(text, stamp);
+    else
+      append_fixed(text, stamp, plan_.time_decimals);
+    return;
+  }
+  const auto value = damaged(reading(row), row.sampled_s);
+  if (!value) return;
+  if (kind_ == ColumnKind::speed)
+    append_fixed(text, *value, 2);
+  else
+    append_whole(text, *value);
+}
+
+}  // namespace clickwise::sim

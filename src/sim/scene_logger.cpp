@@ -1,0 +1,68 @@
+#include <array>
+
+#include "scene_readers.hpp"
+
+namespace clickwise::sim {
+
+namespace {
+
+using run::FaultKind;
+
+constexpr io::Limits moments_s{.least = 0.0, .most = 1e5, .example = 30.0};
+constexpr io::Limits stretches_s{.least = 0.0, .most = 1e4, .ends_excluded = true, .example = 0.5};
+
+constexpr std::array all_kinds{FaultKind::gap,      FaultKind::time_restart, FaultKind::spike,
+                               FaultKind::stuck,    FaultKind::saturated,    FaultKind::missing,
+                               FaultKind::truncated};
+
+FaultKind read_kind(const io::TomlTable& fault) {
+  std::vector<std::string_view> words;
+  for (const auto kind : all_kinds) words.push_back(run::to_string(kind));
+  const std::string word = fault.need_choice("kind", words);
+  for (const auto kind : all_kinds)
+    if (word == run::to_string(kind)) return kind;
+  return FaultKind::gap;
+}
+
+PlannedFault read_fault(const io::TomlTable& table) {
+  PlannedFault fault;
+  fault.kind = read_kind(table);
+  fault.at_s = table.need_number("at_s", moments_s);
+  const bool moment = fault.kind == FaultKind::spike || fault.kind == FaultKind::time_restart ||
+                      fault.kind == FaultKind::truncated;
+  const bool whole_log = fault.kind == FaultKind::gap || fault.kind == FaultKind::time_restart ||
+                         fault.kind == FaultKind::truncated;
+  if (!moment) fault.seconds = table.need_number("seconds", stretches_s);
+  if (!whole_log) fault.channel = table.need_text("column", "fork_adc");
+  if (fault.kind == FaultKind::spike)
+    fault.counts = table.number_or("counts", fault.counts, {.least = -1e9, .most = 1e9});
+  return fault;
+}
+
+std::vector<std::string> read_names(const io::TomlTable& logger, std::string_view key) {
+  std::vector<std::string> names;
+  if (const auto list = logger.find(key))
+    for (const auto& item : list->items()) names.push_back(item.text());
+  return names;
+}
+
+}  // namespace
+
+LoggerPlan read_logger(const io::TomlTable& logger) {
+  LoggerPlan plan;
+  plan.rate_hz =
+      logger.number_or("rate_hz", plan.rate_hz, {.least = 10.0, .most = 2e4, .example = 1000.0});
+  plan.adc_bits = static_cast<int>(logger.integer("adc_bits", 4, 32).value_or(plan.adc_bits));
+  plan.noise_counts =
+      logger.number_or("noise_counts", 0.0, {.least = 0.0, .most = 1e6, .example = 1.5});
+  plan.jitter = logger.number_or("jitter", 0.0, {.least = 0.0, .most = 0.49, .example = 0.05});
+  plan.time_decimals = static_cast<int>(logger.integer("time_decimals", 0, 9).value_or(0));
+  plan.clock_start =
+      logger.number_or("clock_start", 0.0, {.least = 0.0, .most = 1e15, .example = 4.29e9});
+  plan.wrap_u32 = logger.boolean("wrap_u32").value_or(false);
+  plan.extra_columns = read_names(logger, "extra_columns");
+  for (const auto& fault : logger.tables("fault")) plan.faults.push_back(read_fault(fault));
+  return plan;
+}
+
+}  // namespace clickwise::sim
