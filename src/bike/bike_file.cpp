@@ -16,14 +16,16 @@ constexpr std::string_view any_schema = "clickwise-bike-";
 
 void check_schema(const io::TomlTable& root) {
   const std::string example = fmt::format("schema = \"{}\"", schema);
-  const io::TomlValue value =
-      root.need("schema", example + " (without it this is not a bike file)");
-  const std::string found = value.text();
+  const auto value = root.find("schema");
+  if (!value)
+    root.refuse("this is not a bike file: schema is missing",
+                "give a bike file, or start this one with " + example);
+  const std::string found = value->text();
   if (found == schema) return;
   if (found.starts_with(any_schema))
-    value.refuse("this bike file is for another version of the program",
-                 "use that version, or rewrite the file as " + example);
-  value.refuse("this is not a bike file", "give a file that starts with " + example);
+    value->refuse("this bike file is for another version of the program",
+                  "use that version, or rewrite the file as " + example);
+  value->refuse("this is not a bike file", "give a file that starts with " + example);
 }
 
 void read_masses(const io::TomlTable& root, Bike& bike) {

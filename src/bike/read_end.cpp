@@ -1,4 +1,5 @@
 #include <algorithm>
+#include <cmath>
 
 #include "bike_readers.hpp"
 #include "clickwise/core/units.hpp"
@@ -26,9 +27,12 @@ core::Polyline read_calibration(const io::TomlValue& value) {
   if (rows[1][0] < rows[0][0]) std::reverse(rows.begin(), rows.end());
   std::vector<double> reading;
   std::vector<double> travel_m;
-  for (const auto& row : rows) {
-    reading.push_back(row[0]);
-    travel_m.push_back(core::from_mm(row[1]));
+  for (std::size_t i = 0; i < rows.size(); ++i) {
+    reading.push_back(rows[i][0]);
+    travel_m.push_back(core::from_mm(rows[i][1]));
+    if (i > 0 && !std::isfinite((travel_m[i] - travel_m[i - 1]) / (reading[i] - reading[i - 1])))
+      value.refuse("two readings lie too close together, or too far apart, for a slope",
+                   "take the readings again at full extension and full compression");
   }
   return core::Polyline(reading, travel_m);
 }

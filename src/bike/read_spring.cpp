@@ -1,5 +1,6 @@
 #include <fmt/format.h>
 
+#include <cmath>
 #include <string>
 
 #include "bike_readers.hpp"
@@ -8,6 +9,9 @@
 namespace clickwise::bike {
 
 namespace {
+
+constexpr double most_force_n = 1e6;
+constexpr double most_travel_mm = 1e4;
 
 constexpr TwoUnits rate{"rate_n_mm",
                         1.0 / core::metres_per_mm,
@@ -58,8 +62,12 @@ TableSpring read_table(const io::TomlTable& table) {
   std::vector<double> force_n;
   for (std::size_t i = 0; i < rows.size(); ++i) {
     const io::TomlValue row = value.items()[i];
-    if (rows[i][1] < 0.0)
-      row.refuse("the force must be at least 0 N", "write [travel in mm, force in N]");
+    if (rows[i][1] < 0.0 || rows[i][1] > most_force_n)
+      row.refuse(fmt::format("the force must be from 0 to {} N", most_force_n),
+                 "write [travel in mm, force in N]");
+    if (std::abs(rows[i][0]) > most_travel_mm)
+      row.refuse(fmt::format("the travel must be at most {} mm", most_travel_mm),
+                 "write [travel in mm, force in N]");
     if (i > 0 && !(rows[i][0] > rows[i - 1][0] && rows[i][1] >= rows[i - 1][1]))
       row.refuse("travel must increase from point to point, and force must not fall",
                  "put the points in order");

@@ -54,7 +54,7 @@ std::string_view unit_of(std::string_view key) {
 
 std::string with_unit(double value, std::string_view key) {
   const std::string_view unit = unit_of(key);
-  return unit.empty() ? fmt::format("{}", value) : fmt::format("{} {}", value, unit);
+  return unit.empty() ? fmt::format("{:.6g}", value) : fmt::format("{:.6g} {}", value, unit);
 }
 
 std::string printable(std::string_view text) {
@@ -105,8 +105,8 @@ std::string limits_phrase(const Limits& limits, std::string_view key) {
   const bool high = std::isfinite(limits.most);
   const std::string most = with_unit(limits.most, key);
   if (low && high && limits.ends_excluded)
-    return fmt::format("must be above {} and below {}", limits.least, most);
-  if (low && high) return fmt::format("must be from {} to {}", limits.least, most);
+    return fmt::format("must be above {:.6g} and below {}", limits.least, most);
+  if (low && high) return fmt::format("must be from {:.6g} to {}", limits.least, most);
   if (low)
     return fmt::format("must be {} {}", limits.ends_excluded ? "above" : "at least",
                        with_unit(limits.least, key));
