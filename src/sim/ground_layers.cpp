@@ -71,7 +71,7 @@ struct FeatureLayer {
     for (long i = 0; i < count; ++i) {
       const double at = garden.at_m + garden.length_m * rocks.uniform();
       const double height = garden.height_m * (0.4 + 0.6 * rocks.uniform());
-      const double length = 0.15 + 0.35 * rocks.uniform();
+      const double length = 0.25 + 0.35 * rocks.uniform();
       (*this)(Rock{at, height, length, rocks.uniform() < 0.5});
     }
   }

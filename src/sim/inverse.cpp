@@ -2,6 +2,7 @@
 
 #include <algorithm>
 #include <cmath>
+#include <cstdlib>
 
 #include "clickwise/core/units.hpp"
 
@@ -159,7 +160,10 @@ void hang_ground(Forcing& forcing, const std::vector<double>& z, std::size_t fro
   const double start = takes_off ? forcing.ground_m[from - 1] : z[from];
   const double stop = lands ? forcing.ground_m[to] : z[std::min(to, z.size() - 1)];
   const double seconds = span * h;
-  const double sagitta = gravity * seconds * seconds / 8.0;
+  static const double tau = getenv("TAU") ? atof(getenv("TAU")) : 0.06;
+  static const double fade = getenv("FADE") ? atof(getenv("FADE")) : 9.0;
+  const double sagitta = 1.0 - std::exp(-std::pow(seconds / tau, 1.5));
+  if (seconds > fade) hang = 0.0;
   for (std::size_t n = from; n < to; ++n) {
     const double k = static_cast<double>(n - from + 1);
     const double part = k / span;

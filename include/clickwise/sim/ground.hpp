@@ -21,7 +21,7 @@ struct Rock {
   bool flat_topped = false;
 };
 
-// Seeded rocks of 40 to 100 % of the height and 0.15 to 0.5 m length; where two lie, the higher.
+// Seeded rocks of 40 to 100 % of the height and 0.25 to 0.6 m length; where two lie, the higher.
 struct RockGarden {
   double at_m = 0.0;
   double length_m = 0.0;
