@@ -37,8 +37,8 @@ public:
     result_.unread.resize(targets.size());
     for (const char c : {'#', ' ', '\t', '\r', '\n'})
       special_[static_cast<unsigned char>(c)] = true;
-    const std::string_view header = settings.layout.header;
-    if (!header.empty()) special_[static_cast<unsigned char>(header.front())] = true;
+    for (const std::string_view line : {settings.layout.header, settings.layout.units})
+      if (!line.empty()) special_[static_cast<unsigned char>(line.front())] = true;
   }
 
   ChunkResult parse(std::size_t begin, std::size_t end) {
@@ -70,10 +70,11 @@ private:
 
   // Behind a line that is a comment, blank, or the header once more; `at` itself for a row.
   const char* skip_special_line(const char* at) {
-    if (repeats_header(at)) {
+    if (repeats(settings_.layout.header, at)) {
       result_.header_repeats.push_back(result_.rows);
       return behind_line(at + settings_.layout.header.size());
     }
+    if (repeats(settings_.layout.units, at)) return behind_line(at + settings_.layout.units.size());
     const char* first = at;
     while (first < text_end_ && is_blank(*first)) ++first;
     if (first == text_end_ || *first == '\n') return skip_blank_line(at, first);
@@ -88,13 +89,11 @@ private:
     return std::min(line_end + 1, text_end_);
   }
 
-  bool repeats_header(const char* at) const {
-    const std::string_view header = settings_.layout.header;
-    if (header.empty()) return false;
+  bool repeats(std::string_view line, const char* at) const {
+    if (line.empty()) return false;
     const std::string_view rest(at, static_cast<std::size_t>(text_end_ - at));
-    if (!rest.starts_with(header)) return false;
-    return rest.size() == header.size() || rest[header.size()] == '\n' ||
-           rest[header.size()] == '\r';
+    if (!rest.starts_with(line)) return false;
+    return rest.size() == line.size() || rest[line.size()] == '\n' || rest[line.size()] == '\r';
   }
 
   // Reads the row that begins at `at`; returns the byte behind it.

@@ -172,6 +172,7 @@ Columns read_columns(std::string_view text, const TextLayout& layout,
     columns = in_one_piece.take();
   }
   columns.truncated = last.cut;
+  columns.whole_rows = columns.rows - (options.keep_malformed_rows ? columns.malformed_rows() : 0);
   return columns;
 }
 

@@ -15,6 +15,7 @@ struct TextLayout {
   std::size_t columns = 1;       // cells of a row
   std::size_t data_begin = 0;    // byte at which the first row begins
   std::string_view header = {};  // the header as written, without its line end; empty if none
+  std::string_view units = {};   // likewise a line of units behind the header
 };
 
 // One record: its cells, and the byte behind its line end.
@@ -62,7 +63,8 @@ struct MalformedRows {
 };
 
 struct Columns {
-  std::size_t rows = 0;
+  std::size_t rows = 0;                  // values in each column
+  std::size_t whole_rows = 0;            // of them, those with the right number of cells
   std::vector<Column> columns;           // in the order asked for
   std::vector<MalformedRows> malformed;  // by row; with keep_malformed_rows, that row is the first
   std::vector<std::size_t> header_repeats;  // rows in front of which the header stands once more
@@ -70,7 +72,8 @@ struct Columns {
   std::size_t malformed_rows() const;
 };
 
-// All rows from layout.data_begin on. Lines that begin with '#' and blank lines are no rows (in a
+// All rows from layout.data_begin on. Lines that begin with '#', the header or the units once more,
+// and blank lines are no rows (in a
 // text of one column a blank line is a malformed row, as it stands for a lost cell, unless it is at
 // the end). A last line without a line end is a row if it has all its cells and the last one is not
 // shorter, does not have fewer decimals, and does not jump further than in the 64 rows before it;
