@@ -56,6 +56,32 @@ BandLanes keep(const Lanes& decay_s, double rate_hz) {
   return (-1.0 / (decay_s * rate_hz)).exp().cast<float>();
 }
 
+// One row of values a sample, in one piece of memory, so that a row shifted by one lane is another
+// load: far cheaper than a shuffle. Behind the last row stands a 0 for it.
+template <typename Row>
+class Rows {
+public:
+  using Value = typename Row::Scalar;
+
+  void resize(std::size_t n) { values_.resize(n * width + 1); }
+  Eigen::Map<Row> operator[](std::size_t i) { return Eigen::Map<Row>(&values_[i * width]); }
+
+  // Each lane less the next slower one; the last lane itself.
+  auto steps(std::size_t i) const {
+    const Value* const row = &values_[i * width];
+    return Eigen::Map<const Row>(row) - all_but_last * Eigen::Map<const Row>(row + 1);
+  }
+
+private:
+  static constexpr auto width = static_cast<std::size_t>(bank_size);
+  static inline const Row all_but_last = [] {
+    Row row = Row::Constant(Value(1));
+    row[last] = Value(0);
+    return row;
+  }();
+  std::vector<Value> values_;
+};
+
 }  // namespace
 
 // Sample i of a chunk is reading first + i - margin.
@@ -63,10 +89,18 @@ struct AdaptiveSmoother::Chunk {
   std::size_t first = 0;  // reading that the chunk is for, and how many
   std::size_t count = 0;
   std::vector<double> readings;  // with the margins
-  std::vector<Lanes> travel;     // members of the bank
-  std::vector<BandLanes> band;   // b_k; the last lane: v_last
-  std::vector<BandLanes> power;  // of b_k, half averaged
+  Rows<Lanes> travel;            // of the bank's members
+  Rows<BandLanes> velocity;      // of the bank's members; its steps are the bands b_k, then v_last
+  Rows<BandLanes> power;         // of b_k, on its way through the averages
   std::vector<float> alert;      // 0 at rest ... 1 when something moves
+
+  void resize(std::size_t n) {
+    readings.resize(n);
+    travel.resize(n);
+    velocity.resize(n);
+    power.resize(n);
+    alert.assign(n, 0.0F);
+  }
 };
 
 AdaptiveSmoother::AdaptiveSmoother(double rate_hz, double noise_m, double memory_s)
@@ -102,17 +136,13 @@ void AdaptiveSmoother::find_variances(double noise_m) {
   step_variance_ = (step * noise_m * noise_m).cast<float>();
 }
 
-// The bank's backward pass, the bands behind it and, behind them, the backward half of the first
-// average of their power.
-void AdaptiveSmoother::split_into_bands(Chunk& chunk) const {
+void AdaptiveSmoother::run_bank(Chunk& chunk) const {
   const std::size_t n = chunk.readings.size();
   SplineBank::Pass forward(Lanes::Constant(chunk.readings.front()));
   for (std::size_t i = 0; i < n; ++i) {
     chunk.travel[i] = bank_.step(forward, Lanes::Constant(chunk.readings[i]));
   }
-  SplineBank::Pass backward(chunk.travel.back());
-  BandLanes average = BandLanes::Zero();
-  Lanes slower = Lanes::Zero();
+  SplineBank::Pass backward(chunk.travel[n - 1]);
   for (std::size_t i = n; i-- > 0;) {
     chunk.travel[i] = bank_.step(backward, chunk.travel[i]);
     const std::size_t centre = i + reach;
@@ -122,34 +152,38 @@ void AdaptiveSmoother::split_into_bands(Chunk& chunk) const {
       velocity +=
           difference[j - 1] * rate_hz_ * (chunk.travel[centre + j] - chunk.travel[centre - j]);
     }
-    slower.head<last>() = velocity.tail<last>();
-    const BandLanes band = (velocity - slower).cast<float>();
-    const BandLanes power = band.square();
-    average = power + first_keep_ * (average - power);
-    chunk.band[centre] = band;
-    chunk.power[centre] = average;
+    chunk.velocity[centre] = velocity.cast<float>();
   }
 }
 
-// The forward half of the first average; the power that its gains let through; and the forward half
-// of the second average. On the way: how far the bands' power is above that of noise.
+// The forward half of the first average.
+void AdaptiveSmoother::average_power(Chunk& chunk) const {
+  BandLanes average = BandLanes::Zero();
+  for (std::size_t i = reach; i + reach < chunk.readings.size(); ++i) {
+    const BandLanes power = chunk.velocity.steps(i).square();
+    average = power + first_keep_ * (average - power);
+    chunk.power[i] = average;
+  }
+}
+
+// The backward half of the first average; the power that its gains let through; and the backward
+// half of the second average. On the way: how far the bands' power is above that of noise.
 void AdaptiveSmoother::find_first_gains(Chunk& chunk) const {
   // An exponential average to both sides sees about 4 decay times, with 2 B T degrees of freedom.
   const Lanes decay_s = -1.0 / (first_keep_.cast<double>().log() * rate_hz_);
   Lanes width_hz = bank_.cutoff_hz();
   width_hz.head<last>() -= bank_.cutoff_hz().tail<last>();
-  const BandLanes noise = band_variance_ + tiny;
   BandLanes freedom = (4.0 * decay_s * width_hz).sqrt().cast<float>();
   freedom[last] = 0.0F;
-  const BandLanes scale = freedom / noise;
+  const BandLanes scale = freedom / (band_variance_ + tiny);
   const BandLanes toll = first_toll * band_variance_;
   BandLanes first = BandLanes::Zero();
   BandLanes second = BandLanes::Zero();
-  for (std::size_t i = reach; i + reach < chunk.power.size(); ++i) {
+  for (std::size_t i = chunk.readings.size() - reach; i-- > reach;) {
     first = chunk.power[i] + first_keep_ * (first - chunk.power[i]);
     chunk.alert[i] = std::min((first * scale - freedom).maxCoeff(), alert_cap);
     const BandLanes gain = (1.0F - toll / (first + tiny)).max(0.0F);
-    const BandLanes power = (gain * chunk.band[i]).square();
+    const BandLanes power = (gain * chunk.velocity.steps(i)).square();
     second = power + second_keep_ * (second - power);
     chunk.power[i] = second;
   }
@@ -168,22 +202,21 @@ void AdaptiveSmoother::find_alert(Chunk& chunk) const {
   }
 }
 
-// The backward half of the second average, the gains, and what they let through.
+// The forward half of the second average, the gains, and what they let through.
 void AdaptiveSmoother::combine(Chunk& chunk, Smoothed& out) const {
   const BandLanes noise = band_variance_ + tiny;
+  BandLanes only_last = BandLanes::Zero();
+  only_last[last] = 1.0F;
   BandLanes second = BandLanes::Zero();
-  Lanes slower = Lanes::Zero();
-  for (std::size_t i = chunk.power.size() - reach; i-- > margin_;) {
+  for (std::size_t i = reach; i < margin_ + chunk.count; ++i) {
     second = chunk.power[i] + second_keep_ * (second - chunk.power[i]);
-    if (i >= margin_ + chunk.count) continue;
-    BandLanes gain = chunk.alert[i] * second / (second + noise);
-    gain[last] = 1.0F;
-    const Lanes& travel = chunk.travel[i];
-    slower.head<last>() = travel.tail<last>();
+    if (i < margin_) continue;
+    const BandLanes share = chunk.alert[i] * second / (second + noise);
+    const BandLanes gain = share.max(only_last);
     const std::size_t at = chunk.first + i - margin_;
-    out.position_m[at] = (gain.cast<double>() * (travel - slower)).sum();
-    out.velocity_m_s[at] = static_cast<double>((gain * chunk.band[i]).sum());
-    out.sigma_m_s[at] = std::sqrt(static_cast<double>((gain * step_variance_).sum()));
+    out.position_m[at] = (gain.cast<double>() * chunk.travel.steps(i)).sum();
+    out.velocity_m_s[at] = static_cast<double>((gain * chunk.velocity.steps(i)).sum());
+    out.sigma_m_s[at] = static_cast<double>(std::sqrt((gain * step_variance_).sum()));
   }
 }
 
@@ -200,16 +233,13 @@ Smoothed AdaptiveSmoother::smooth(std::span<const double> readings_m) const {
     chunk.first = first;
     chunk.count = std::min(chunk_samples, n - first);
     const std::size_t padded = chunk.count + 2 * margin_;
-    chunk.readings.resize(padded);
-    chunk.travel.resize(padded);
-    chunk.band.resize(padded);
-    chunk.power.resize(padded);
-    chunk.alert.assign(padded, 0.0F);
+    chunk.resize(padded);
     for (std::size_t i = 0; i < padded; ++i) {
       chunk.readings[i] = continued.at(static_cast<std::ptrdiff_t>(first + i) -
                                        static_cast<std::ptrdiff_t>(margin_));
     }
-    split_into_bands(chunk);
+    run_bank(chunk);
+    average_power(chunk);
     find_first_gains(chunk);
     find_alert(chunk);
     combine(chunk, out);

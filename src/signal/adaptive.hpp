@@ -27,7 +27,8 @@ private:
   struct Chunk;
 
   void find_variances(double noise_m);
-  void split_into_bands(Chunk& chunk) const;
+  void run_bank(Chunk& chunk) const;
+  void average_power(Chunk& chunk) const;
   void find_first_gains(Chunk& chunk) const;
   void find_alert(Chunk& chunk) const;
   void combine(Chunk& chunk, Smoothed& out) const;
