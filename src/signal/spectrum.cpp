@@ -52,7 +52,8 @@ private:
   fftw_plan plan_;
 };
 
-// Coefficients a_j of sum_j (-1)^j a_j cos(2 pi j i / n) (Harris 1978, equations 27-33).
+// Coefficients a_j of sum_j (-1)^j a_j cos(2 pi j i / n) (Harris 1978; flat top: G. D'Antona and
+// A. Ferrero, Digital Signal Processing for Measurement Systems, 2006).
 std::vector<double> cosines(Window window) {
   switch (window) {
     case Window::rectangle:
@@ -65,6 +66,8 @@ std::vector<double> cosines(Window window) {
       return {0.42, 0.50, 0.08};
     case Window::blackman_harris:
       return {0.35875, 0.48829, 0.14128, 0.01168};
+    case Window::flat_top:
+      return {0.21557895, 0.41663158, 0.277263158, 0.083578947, 0.006947368};
   }
   return {1.0};
 }

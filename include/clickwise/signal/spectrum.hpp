@@ -7,7 +7,7 @@
 
 namespace clickwise::signal {
 
-enum class Window { rectangle, hann, hamming, blackman, blackman_harris };
+enum class Window { rectangle, hann, hamming, blackman, blackman_harris, flat_top };
 
 // The window's weights in periodic form (that is, of period n), n >= 1.
 std::vector<double> weights(Window window, std::size_t n);
