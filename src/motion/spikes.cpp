@@ -50,6 +50,13 @@ public:
     return options;
   }
 
+  // Half the bend of the largest acceleration over the hole that the group would leave.
+  double floor_m(std::size_t length) const {
+    const double half_hole_s = 0.5 * static_cast<double>(length + 1) * search_.interval_s();
+    return std::max(least_m_,
+                    0.5 * search_.options.largest_acceleration_m_s2 * half_hole_s * half_hole_s);
+  }
+
   // Eq. M8: is the group [begin, end) of `run` too short for a step, and off what its neighbours
   // lead to by more than the motion can be?
   bool confirms(run::Stretch group, run::Stretch run) const {
@@ -61,13 +68,6 @@ public:
   }
 
 private:
-  // Half the bend of the largest acceleration over the hole that the group would leave.
-  double floor_m(std::size_t length) const {
-    const double half_hole_s = 0.5 * static_cast<double>(length + 1) * search_.interval_s();
-    return std::max(least_m_,
-                    0.5 * search_.options.largest_acceleration_m_s2 * half_hole_s * half_hole_s);
-  }
-
   double bridge(std::size_t i, run::Stretch group, run::Stretch run) const {
     const auto at = [&](std::size_t k) {
       return Node{static_cast<double>(k), search_.travel_m[k]};
@@ -83,6 +83,41 @@ private:
   std::size_t longest_;
 };
 
+// Where some bend is larger than `bend_m`, with `around` samples on each side: the rest of a ride
+// cannot hold a spike and is not searched.
+std::vector<run::Stretch> bent_stretches(const FaultSearch& search, run::Stretch run, double bend_m,
+                                         std::size_t around) {
+  const auto& x = search.travel_m;
+  std::vector<run::Stretch> bent;
+  for (std::size_t i = run.begin + 1; i + 1 < run.end; ++i) {
+    if (!(std::abs(x[i - 1] - 2.0 * x[i] + x[i + 1]) > bend_m)) continue;
+    const run::Stretch here{i - std::min(around, i - run.begin), std::min(i + around, run.end)};
+    if (!bent.empty() && here.begin <= bent.back().end)
+      bent.back().end = here.end;
+    else
+      bent.push_back(here);
+  }
+  return bent;
+}
+
+// Eq. M6: the values less the running median of their steps, summed up. A hit's slope goes, a
+// spike, whose steps are outliers of their window, stays.
+std::vector<double> without_slope(std::span<const double> values, std::size_t half_width) {
+  std::vector<double> steps(values.size() - 1);
+  for (std::size_t i = 0; i + 1 < values.size(); ++i) steps[i] = values[i + 1] - values[i];
+  std::vector<double> level(values.begin(), values.end());
+  double slope_sum = 0.0;
+  for (std::size_t i = 0; i < steps.size(); ++i) {
+    const std::size_t begin = i - std::min(i, half_width);
+    const std::size_t end = std::min(i + half_width + 1, steps.size());
+    slope_sum +=
+        core::median(std::vector<double>(steps.begin() + static_cast<std::ptrdiff_t>(begin),
+                                         steps.begin() + static_cast<std::ptrdiff_t>(end)));
+    level[i + 1] -= slope_sum;
+  }
+  return level;
+}
+
 }  // namespace
 
 Masked mask_spikes(FaultSearch& search) {
@@ -90,12 +125,17 @@ Masked mask_spikes(FaultSearch& search) {
   const SpikeRule rule(search);
   const signal::HampelOptions hampel = rule.hampel();
   for (const run::Stretch& run : search.usable_runs()) {
-    const auto suspects = signal::hampel_spikes(
-        std::span(search.travel_m).subspan(run.begin, run.end - run.begin), hampel);
-    for (std::size_t k = 0; k < suspects.size();) {
-      run::Stretch group{run.begin + suspects[k], run.begin + suspects[k] + 1};
-      while (++k < suspects.size() && run.begin + suspects[k] == group.end) ++group.end;
-      if (rule.confirms(group, run)) mask(search, group, masked);
+    for (const run::Stretch& bent :
+         bent_stretches(search, run, rule.floor_m(1), 4 * hampel.half_width)) {
+      const auto suspects = signal::hampel_spikes(
+          without_slope(std::span(search.travel_m).subspan(bent.begin, bent.end - bent.begin),
+                        hampel.half_width),
+          hampel);
+      for (std::size_t k = 0; k < suspects.size();) {
+        run::Stretch group{bent.begin + suspects[k], bent.begin + suspects[k] + 1};
+        while (++k < suspects.size() && bent.begin + suspects[k] == group.end) ++group.end;
+        if (rule.confirms(group, run)) mask(search, group, masked);
+      }
     }
   }
   return masked;

@@ -26,7 +26,7 @@ struct ReadingFaultOptions {
   double largest_acceleration_m_s2 = 1000.0;  // at the shaft
   double spike_window_s = 6e-3;               // on each side; at least 3 samples
   double longest_spike_s = 3e-3;              // at least 3 samples
-  double spike_threshold = 5.0;               // Hampel sigmas
+  double spike_threshold = 3.5;               // Hampel sigmas
 };
 
 struct ReadingFaults {
