@@ -61,6 +61,7 @@ double breakaway_n(const VehicleEnd& end, const damper::Law& law) {
 // Everything per step, before the unknown parts are filled.
 struct Steps {
   std::vector<double> relative_m_s2;  // z̈ of the step
+  std::vector<double> shaft_m_s;      // v
   std::vector<double> wheel_n;        // F_w
   std::vector<double> tyre_n;
   std::vector<std::uint8_t> at_top;
@@ -108,14 +109,15 @@ Steps forces(const VehicleEnd& end, const std::vector<double>& z, double start_m
              const InverseOptions& options) {
   const std::size_t count = z.size() - 1;
   Steps steps;
-  std::vector<double> spring(count), inverse_ratio(count), v(count);
+  std::vector<double> spring(count), inverse_ratio(count);
+  auto& v = steps.shaft_m_s;
   double before = start_m_s;
   for (std::size_t n = 0; n < count; ++n) {
     const auto node = end.table.at(z[n]);
     const double u = (z[n + 1] - z[n]) / h;
     spring[n] = node.spring_n;
     inverse_ratio[n] = node.inverse_ratio;
-    v[n] = u * node.inverse_ratio;
+    v.push_back(u * node.inverse_ratio);
     steps.relative_m_s2.push_back((u - before) / h);
     before = u;
     steps.at_top.push_back(node.shaft_m < options.stop_margin_m);
@@ -129,6 +131,19 @@ Steps forces(const VehicleEnd& end, const std::vector<double>& z, double start_m
                            end.unsprung_mass_kg * steps.relative_m_s2[n]);
   }
   return steps;
+}
+
+// A landing pushes the end off its top stop: the last steps before tyre and spring are seen to
+// carry, as far back as the end already gathers speed, belong to the landing.
+void free_landings(Steps& steps, double least_tyre_n) {
+  for (std::size_t end = 1; end < steps.at_top.size(); ++end) {
+    if (steps.at_top[end] != 0 || steps.at_top[end - 1] == 0 || steps.tyre_n[end] < least_tyre_n)
+      continue;
+    for (std::size_t n = end; n-- > 0 && steps.at_top[n] != 0;) {
+      if (!(steps.shaft_m_s[n] > 0.0 && steps.relative_m_s2[n] > 0.0)) break;
+      steps.at_top[n] = 0;
+    }
+  }
 }
 
 // At the stops the tyre's force is a guess, none at full extension and straight between before and
@@ -207,6 +222,7 @@ Forcing recover_forcing(const VehicleEnd& end, const Stretch& stretch,
   forcing.wheel_m = z[0];
   forcing.wheel_m_s = (z[1] - z[0]) / forcing.step_s;
   Steps steps = forces(end, z, forcing.wheel_m_s, forcing.step_s, options);
+  free_landings(steps, options.least_tyre_n);
   guess_at_stops(end, steps);
   lay_ground_under(end, steps, z, options, forcing);
   return forcing;

@@ -17,9 +17,9 @@ namespace clickwise::sim {
 struct PlannedFault {
   run::FaultKind kind = run::FaultKind::gap;
   double at_s = 0.0;
-  double seconds = 0.0;    // of gap, stuck, saturated, missing
-  std::string channel;     // a column of the log; empty for gap, time_restart, truncated
-  double counts = 1500.0;  // height of a spike; its sign is kept, the converter's range clips it
+  double seconds = 0.0;      // of gap, stuck, saturated, missing
+  std::string channel = {};  // a column of the log; empty for gap, time_restart, truncated
+  double counts = 1500.0;    // height of a spike; its sign is kept, the converter's range clips it
 };
 
 struct LoggerPlan {
