@@ -66,7 +66,8 @@ bool looks_cut(std::string_view cell, const std::vector<std::string>& before, ch
   const double value = parse_number(cell, point);
   const double previous = parse_number(before.front(), point);
   if (std::isnan(previous)) return false;
-  return std::isnan(value) || std::abs(value - previous) > largest_step(before, point);
+  const double step = largest_step(before, point);
+  return std::isnan(value) || (step > 0.0 && std::abs(value - previous) > step);
 }
 
 }  // namespace

@@ -88,10 +88,10 @@ private:
 
   void settle_interval() {
     for (int round = 0; round < 2; ++round) {
-      findings_ = find_breaks(stamps_, marks_, interval_s_);
+      findings_ = find_breaks(stamps_, marks_, interval_s_, clock_.resolution_s);
       interval_s_ = mean_clean_step(stamps_, findings_, interval_s_);
     }
-    findings_ = find_breaks(stamps_, marks_, interval_s_);
+    findings_ = find_breaks(stamps_, marks_, interval_s_, clock_.resolution_s);
     clock_.interval_s = interval_s_;
   }
 
@@ -166,11 +166,19 @@ private:
     clock_.stretches.push_back({begin, stamps_.size()});
     const double grid = clock_.resolution_s;
     if (grid <= 0.01 * interval_s_) return;
-    for (const run::Stretch& stretch : clock_.stretches) {
-      const bool line = stretch.end - stretch.begin >= shortest_line &&
-                        take_as_rounded_line(stamps_, stretch.begin, stretch.end, grid);
-      if (!line) spread_equal_stamps(stamps_, stretch.begin, stretch.end, interval_s_, grid);
-    }
+    for (const run::Stretch& stretch : clock_.stretches)
+      if (!take_as_line(stretch, grid))
+        spread_equal_stamps(stamps_, stretch.begin, stretch.end, interval_s_, grid);
+  }
+
+  // Puts stamps on their line if they keep within 3/4 of a grid step of it.
+  bool take_as_line(const run::Stretch& stretch, double grid) {
+    if (stretch.end - stretch.begin < shortest_line) return false;
+    const StampLine line = fit_line(stamps_, stretch.begin, stretch.end);
+    if (line.step <= 0.0 || line.range > 1.5 * grid) return false;
+    for (std::size_t i = stretch.begin; i < stretch.end; ++i)
+      stamps_[i] = line.start + line.step * static_cast<double>(i - stretch.begin);
+    return true;
   }
 
   // Rounding of stamps may leave a stretch beginning in front of the end of the one before.

@@ -1,6 +1,7 @@
 #include "clock_breaks.hpp"
 
 #include <algorithm>
+#include <iterator>
 
 #include "clock_steps.hpp"
 
@@ -12,6 +13,9 @@ constexpr double day_s = 86400.0;
 constexpr double longest_clean_step = 1.5;   // intervals
 constexpr double shortest_clean_step = 0.1;  // intervals
 constexpr double jump_of_phase = 0.5;        // intervals
+constexpr double coarse_grid = 0.25;         // intervals
+constexpr double range_of_drift = 1.25;      // grid steps
+constexpr std::ptrdiff_t fewest_of_drift = 3;
 
 class BreakFinder {
 public:
@@ -100,11 +104,45 @@ private:
   Findings findings_;
 };
 
+bool could_be_rounding(const Break& one, double interval_s, double grid_s) {
+  return !one.restart && one.malformed_s + one.stamps_s == 0.0 &&
+         one.gap_s < grid_s + jump_of_phase * interval_s;
+}
+
+// Takes the small findings of [begin, end) back where they are what rounding makes of a clock that
+// drifts against the grid: several of them, and all stamps near one line.
+void acquit_drift(Findings& findings, const std::vector<double>& stamps, std::size_t begin,
+                  std::size_t end, double interval_s, double grid_s) {
+  const auto inside = [&](std::size_t sample) { return sample > begin && sample < end; };
+  const auto small_gap = [&](const Break& one) {
+    return inside(one.sample) && could_be_rounding(one, interval_s, grid_s);
+  };
+  const auto events = std::count_if(findings.breaks.begin(), findings.breaks.end(), small_gap) +
+                      std::count_if(findings.twice.begin(), findings.twice.end(), inside);
+  if (events < fewest_of_drift || fit_line(stamps, begin, end).range > range_of_drift * grid_s)
+    return;
+  findings.breaks.erase(std::remove_if(findings.breaks.begin(), findings.breaks.end(), small_gap),
+                        findings.breaks.end());
+  findings.twice.erase(std::remove_if(findings.twice.begin(), findings.twice.end(), inside),
+                       findings.twice.end());
+}
+
 }  // namespace
 
-Findings find_breaks(const std::vector<double>& stamps, const ClockMarks& marks,
-                     double interval_s) {
-  return BreakFinder(stamps, marks, interval_s).find();
+Findings find_breaks(const std::vector<double>& stamps, const ClockMarks& marks, double interval_s,
+                     double grid_s) {
+  Findings findings = BreakFinder(stamps, marks, interval_s).find();
+  if (grid_s < coarse_grid * interval_s) return findings;
+  std::vector<Break> sure;
+  std::copy_if(findings.breaks.begin(), findings.breaks.end(), std::back_inserter(sure),
+               [&](const Break& one) { return !could_be_rounding(one, interval_s, grid_s); });
+  std::size_t begin = 0;
+  for (std::size_t i = 0; i <= sure.size(); ++i) {
+    const std::size_t end = i < sure.size() ? sure[i].sample : stamps.size();
+    acquit_drift(findings, stamps, begin, end, interval_s, grid_s);
+    begin = end;
+  }
+  return findings;
 }
 
 double mean_clean_step(const std::vector<double>& stamps, const Findings& findings,

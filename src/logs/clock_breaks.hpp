@@ -34,7 +34,9 @@ struct ClockMarks {
   std::vector<Lost> lost;
 };
 
-Findings find_breaks(const std::vector<double>& stamps, const ClockMarks& marks, double interval_s);
+// `grid_s` is what the stamps are rounded to; 0 if not known.
+Findings find_breaks(const std::vector<double>& stamps, const ClockMarks& marks, double interval_s,
+                     double grid_s);
 
 // Mean step over the stretches between the breaks; `otherwise` where there is none.
 double mean_clean_step(const std::vector<double>& stamps, const Findings& findings,

@@ -3,6 +3,7 @@
 #include <algorithm>
 #include <array>
 #include <cmath>
+#include <limits>
 
 #include "clickwise/core/statistics.hpp"
 #include "decimal_grid.hpp"
@@ -174,33 +175,29 @@ double phase_change(const std::vector<double>& stamps, std::size_t at, std::size
          median_phase(stamps, first, at, at - 1, interval);
 }
 
-bool take_as_rounded_line(std::vector<double>& stamps, std::size_t begin, std::size_t end,
-                          double grid) {
+StampLine fit_line(const std::vector<double>& stamps, std::size_t begin, std::size_t end) {
   const auto count = static_cast<double>(end - begin);
   const double middle = 0.5 * (count - 1.0);
+  const auto place = [&](std::size_t i) { return static_cast<double>(i - begin) - middle; };
   double sum = 0.0;
   double moment = 0.0;
   for (std::size_t i = begin; i < end; ++i) {
-    const double stamp = stamps[i] - stamps[begin];
-    sum += stamp;
-    moment += (static_cast<double>(i - begin) - middle) * stamp;
+    sum += stamps[i] - stamps[begin];
+    moment += place(i) * (stamps[i] - stamps[begin]);
   }
-  const double slope = moment * 12.0 / (count * (count * count - 1.0));
   const double mean = sum / count;
-  double least = 0.0;
-  double most = 0.0;
-  const auto line = [&](std::size_t i) {
-    return mean + slope * (static_cast<double>(i - begin) - middle);
-  };
+  StampLine line;
+  line.step = moment * 12.0 / (count * (count * count - 1.0));
+  double least = std::numeric_limits<double>::infinity();
+  double most = -least;
   for (std::size_t i = begin; i < end; ++i) {
-    const double rest = stamps[i] - stamps[begin] - line(i);
+    const double rest = stamps[i] - stamps[begin] - (mean + line.step * place(i));
     least = std::min(least, rest);
     most = std::max(most, rest);
   }
-  if (slope <= 0.0 || most - least > 1.5 * grid) return false;
-  const double start = stamps[begin] + 0.5 * (most + least);
-  for (std::size_t i = begin; i < end; ++i) stamps[i] = start + line(i);
-  return true;
+  line.start = stamps[begin] + mean - line.step * middle + 0.5 * (most + least);
+  line.range = most - least;
+  return line;
 }
 
 }  // namespace clickwise::logs

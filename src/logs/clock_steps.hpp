@@ -31,8 +31,13 @@ void spread_equal_stamps(std::vector<double>& stamps, std::size_t begin, std::si
 double phase_change(const std::vector<double>& stamps, std::size_t at, std::size_t begin,
                     double interval);
 
-// Puts the stamps of [begin, end) on their straight line if they keep within 3/4 of the grid of it.
-bool take_as_rounded_line(std::vector<double>& stamps, std::size_t begin, std::size_t end,
-                          double grid);
+// The straight line through the stamps of [begin, end) by least squares, moved to the middle of
+// what they stray from it.
+struct StampLine {
+  double start = 0.0;
+  double step = 0.0;
+  double range = 0.0;  // largest less smallest distance of a stamp from it
+};
+StampLine fit_line(const std::vector<double>& stamps, std::size_t begin, std::size_t end);
 
 }  // namespace clickwise::logs

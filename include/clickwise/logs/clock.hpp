@@ -60,6 +60,9 @@ struct Clock {
 //    than c / 2 for good. Such rows, and close stamps on a grid finer than c / 4, are merged with
 //    the row before and counted as missing with no seconds; on a coarser grid equal stamps are
 //    rounded ones, no fault, and are spread evenly up to the next;
+//  - on such a coarse grid, three or more gaps and rows written twice that leave all stamps within
+//    1.25 grid steps of a line are a clock that drifts against the grid, no faults; one or two are
+//    taken as faults, though drift could explain them too;
 //  - stamps on a grid coarser than c / 100 that keep within 3/4 of a grid step of a straight line
 //    are that line, rounded: the line is taken.
 // Rows lost between two samples break a stretch where their time was lost too: their seconds are
