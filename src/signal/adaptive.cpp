@@ -6,6 +6,7 @@
 #include <numbers>
 #include <vector>
 
+#include "clickwise/core/statistics.hpp"
 #include "reflection.hpp"
 
 namespace clickwise::signal {
@@ -18,10 +19,22 @@ constexpr Eigen::Index last = bank_size - 1;  // the slowest member, which is al
 constexpr std::size_t chunk_samples = 16384;
 constexpr double end_fit_s = 0.012;
 
-// Central difference of order 8: sum_j c_j (y(i+j) - y(i-j)) per interval (B. Fornberg, Math.
-// Comp. 51:699-706, 1988, table 1).
-constexpr std::array<double, 4> difference{4.0 / 5.0, -1.0 / 5.0, 4.0 / 105.0, -1.0 / 280.0};
-constexpr std::size_t reach = difference.size();
+// Central differences sum_j c_j (y(i+j) - y(i-j)) per interval, of order twice their number
+// (B. Fornberg, Math. Comp. 51:699-706, 1988, table 1). Slow logs hold motion up to their last
+// hertz, where only the longer one is true: 0.99 at a third of the rate, the shorter one 0.85.
+template <std::size_t pairs>
+constexpr std::array<double, pairs> central_difference() {
+  std::array<double, pairs> c{};
+  double product = 2.0;
+  for (std::size_t j = 1; j <= pairs; ++j) {
+    product *= -static_cast<double>(pairs + 1 - j) / static_cast<double>(pairs + j);
+    c[j - 1] = -product / (2.0 * static_cast<double>(j));
+  }
+  return c;
+}
+constexpr std::size_t short_reach = 4;
+constexpr std::size_t long_reach = 8;
+constexpr double slow_log_hz = 600.0;
 
 // Against the chance that noise alone looks like power: what is taken off, in noise variances.
 constexpr float first_toll = 1.5F;
@@ -32,7 +45,7 @@ constexpr double second_share = 0.25;
 // are fully open alert_width later. Otherwise chance bursts would be the velocity of a bike at
 // rest.
 constexpr double alert_s = 0.12;
-constexpr float alert_from = 6.0F;
+constexpr float alert_from = 7.0F;
 constexpr float alert_width = 3.0F;
 constexpr float alert_cap = 18.0F;
 
@@ -44,10 +57,12 @@ constexpr double decays = 14.0;
 
 constexpr float tiny = 1e-30F;  // keeps 0/0 of a silent channel at a gain of 0
 
+template <std::size_t pairs>
 double difference_gain(double w) {
+  constexpr std::array<double, pairs> c = central_difference<pairs>();
   double gain = 0.0;
-  for (std::size_t j = 0; j < reach; ++j) {
-    gain += 2.0 * difference[j] * std::sin(static_cast<double>(j + 1) * w);
+  for (std::size_t j = 0; j < pairs; ++j) {
+    gain += 2.0 * c[j] * std::sin(static_cast<double>(j + 1) * w);
   }
   return gain;
 }
@@ -93,6 +108,7 @@ struct AdaptiveSmoother::Chunk {
   Rows<BandLanes> velocity;      // of the bank's members; its steps are the bands b_k, then v_last
   Rows<BandLanes> power;         // of b_k, on its way through the averages
   std::vector<float> alert;      // 0 at rest ... 1 when something moves
+  std::vector<double> passed;    // sums of gains, over the chunks so far, of every 16th reading
 
   void resize(std::size_t n) {
     readings.resize(n);
@@ -104,13 +120,16 @@ struct AdaptiveSmoother::Chunk {
 };
 
 AdaptiveSmoother::AdaptiveSmoother(double rate_hz, double noise_m, double memory_s)
-    : rate_hz_(rate_hz), bank_(rate_hz), alert_keep_(std::exp(-1.0 / (alert_s * rate_hz))) {
+    : rate_hz_(rate_hz),
+      reach_(rate_hz < slow_log_hz ? long_reach : short_reach),
+      bank_(rate_hz),
+      alert_keep_(std::exp(-1.0 / (alert_s * rate_hz))) {
   const Lanes decay_s = (periods / bank_.cutoff_hz()).max(memory_s);
   first_keep_ = keep(decay_s, rate_hz);
   second_keep_ = keep(second_share * decay_s, rate_hz);
   find_variances(noise_m);
   const double longest_s = std::max(decay_s.maxCoeff(), alert_s);
-  margin_ = bank_.settling_samples() + reach +
+  margin_ = bank_.settling_samples() + reach_ +
             static_cast<std::size_t>(std::ceil(decays * longest_s * rate_hz));
 }
 
@@ -120,7 +139,9 @@ void AdaptiveSmoother::find_variances(double noise_m) {
   Lanes step = Lanes::Zero();
   for (int i = 0; i < steps; ++i) {
     const double w = pi * (i + 0.5) / steps;
-    const double d = std::pow(difference_gain(w) * rate_hz_, 2.0) / steps;
+    const double gain =
+        reach_ == long_reach ? difference_gain<long_reach>(w) : difference_gain<short_reach>(w);
+    const double d = std::pow(gain * rate_hz_, 2.0) / steps;
     double faster = bank_.gain(0, w);
     for (Eigen::Index k = 0; k < last; ++k) {
       const double slower = bank_.gain(k + 1, w);
@@ -136,7 +157,9 @@ void AdaptiveSmoother::find_variances(double noise_m) {
   step_variance_ = (step * noise_m * noise_m).cast<float>();
 }
 
+template <std::size_t reach>
 void AdaptiveSmoother::run_bank(Chunk& chunk) const {
+  constexpr std::array<double, reach> difference = central_difference<reach>();
   const std::size_t n = chunk.readings.size();
   SplineBank::Pass forward(Lanes::Constant(chunk.readings.front()));
   for (std::size_t i = 0; i < n; ++i) {
@@ -159,7 +182,7 @@ void AdaptiveSmoother::run_bank(Chunk& chunk) const {
 // The forward half of the first average.
 void AdaptiveSmoother::average_power(Chunk& chunk) const {
   BandLanes average = BandLanes::Zero();
-  for (std::size_t i = reach; i + reach < chunk.readings.size(); ++i) {
+  for (std::size_t i = reach_; i + reach_ < chunk.readings.size(); ++i) {
     const BandLanes power = chunk.velocity.steps(i).square();
     average = power + first_keep_ * (average - power);
     chunk.power[i] = average;
@@ -179,7 +202,7 @@ void AdaptiveSmoother::find_first_gains(Chunk& chunk) const {
   const BandLanes toll = first_toll * band_variance_;
   BandLanes first = BandLanes::Zero();
   BandLanes second = BandLanes::Zero();
-  for (std::size_t i = chunk.readings.size() - reach; i-- > reach;) {
+  for (std::size_t i = chunk.readings.size() - reach_; i-- > reach_;) {
     first = chunk.power[i] + first_keep_ * (first - chunk.power[i]);
     chunk.alert[i] = std::min((first * scale - freedom).maxCoeff(), alert_cap);
     const BandLanes gain = (1.0F - toll / (first + tiny)).max(0.0F);
@@ -208,16 +231,25 @@ void AdaptiveSmoother::combine(Chunk& chunk, Smoothed& out) const {
   BandLanes only_last = BandLanes::Zero();
   only_last[last] = 1.0F;
   BandLanes second = BandLanes::Zero();
-  for (std::size_t i = reach; i < margin_ + chunk.count; ++i) {
+  for (std::size_t i = reach_; i < margin_ + chunk.count; ++i) {
     second = chunk.power[i] + second_keep_ * (second - chunk.power[i]);
     if (i < margin_) continue;
-    const BandLanes share = chunk.alert[i] * second / (second + noise);
-    const BandLanes gain = share.max(only_last);
+    const BandLanes share = (chunk.alert[i] * second / (second + noise)).max(only_last);
+    const BandLanes gain = share.sqrt();
     const std::size_t at = chunk.first + i - margin_;
+    if (at % 16 == 0) chunk.passed.push_back(static_cast<double>(gain.sum()));
     out.position_m[at] = (gain.cast<double>() * chunk.travel.steps(i)).sum();
     out.velocity_m_s[at] = static_cast<double>((gain * chunk.velocity.steps(i)).sum());
-    out.sigma_m_s[at] = static_cast<double>(std::sqrt((gain * step_variance_).sum()));
+    out.sigma_m_s[at] =
+        static_cast<double>(std::sqrt((2.0F * share / (1.0F + gain) * step_variance_).sum()));
   }
+}
+
+// Between members as many steps up from the slowest one as gains are open.
+double AdaptiveSmoother::effective_cutoff_hz(double open_gains) const {
+  const Lanes& cutoff_hz = bank_.cutoff_hz();
+  const double share = (open_gains - 1.0) / static_cast<double>(last);
+  return cutoff_hz[last] * std::pow(cutoff_hz[0] / cutoff_hz[last], share);
 }
 
 Smoothed AdaptiveSmoother::smooth(std::span<const double> readings_m) const {
@@ -238,12 +270,14 @@ Smoothed AdaptiveSmoother::smooth(std::span<const double> readings_m) const {
       chunk.readings[i] = continued.at(static_cast<std::ptrdiff_t>(first + i) -
                                        static_cast<std::ptrdiff_t>(margin_));
     }
-    run_bank(chunk);
+    if (reach_ == long_reach) run_bank<long_reach>(chunk);
+    if (reach_ == short_reach) run_bank<short_reach>(chunk);
     average_power(chunk);
     find_first_gains(chunk);
     find_alert(chunk);
     combine(chunk, out);
   }
+  out.cutoff_hz = effective_cutoff_hz(core::median(chunk.passed));
   return out;
 }
 

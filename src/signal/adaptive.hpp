@@ -27,13 +27,16 @@ private:
   struct Chunk;
 
   void find_variances(double noise_m);
+  template <std::size_t reach>
   void run_bank(Chunk& chunk) const;
   void average_power(Chunk& chunk) const;
   void find_first_gains(Chunk& chunk) const;
   void find_alert(Chunk& chunk) const;
   void combine(Chunk& chunk, Smoothed& out) const;
+  double effective_cutoff_hz(double open_gains) const;
 
   double rate_hz_;
+  std::size_t reach_;  // of the derivative to either side, samples
   SplineBank bank_;
   double alert_keep_;        // share of a running average kept from sample to sample: of the alert,
   BandLanes first_keep_;     // of the bands' power,

@@ -52,39 +52,48 @@ std::vector<Block> measure_blocks(const std::vector<std::span<const double>>& st
   return blocks;
 }
 
-// The median of a chi-square of this many degrees of freedom against its mean (E. B. Wilson and
-// M. M. Hilferty, Proc. Nat. Acad. Sci. 17:684-688, 1931).
-double median_share(double freedom) {
-  return std::pow(1.0 - 2.0 / (9.0 * freedom), 3.0);
+// The quiet quantile of a chi-square of this many degrees of freedom against its mean (E. B. Wilson
+// and M. M. Hilferty, Proc. Nat. Acad. Sci. 17:684-688, 1931).
+constexpr double quiet = 0.2;
+double quiet_share(double freedom) {
+  constexpr double normal_quantile = -0.841621233572914;
+  const double variance = 2.0 / (9.0 * freedom);
+  return std::pow(1.0 - variance + normal_quantile * std::sqrt(variance), 3.0);
+}
+
+double root_mean_power(const std::vector<Block>& blocks) {
+  double sum = 0.0;
+  for (const Block& block : blocks) sum += block.noise_power;
+  return std::sqrt(sum / static_cast<double>(blocks.size()));
 }
 
 }  // namespace
 
 ReadingNoise reading_noise(const std::vector<std::span<const double>>& stretches_m,
                            double rate_hz) {
-  const std::vector<Block> blocks = measure_blocks(stretches_m, rate_hz);
+  std::vector<Block> blocks = measure_blocks(stretches_m, rate_hz);
   if (blocks.empty()) return {};
+
+  // White noise keeps its readings within eight deviations in most blocks; motion does not. The
+  // deviation for that may be rough: the median block's.
+  constexpr double still_spread = 8.0;
   std::vector<double> powers;
   for (const Block& block : blocks) powers.push_back(block.noise_power);
-  // A channel that is silent at rest still has its quantisation noise while it moves.
-  constexpr double silent_share = 0.05;
-  const double lively = silent_share * core::quantile(powers, 0.75);
-  std::erase_if(powers, [&](double power) { return power < lively; });
-  const double length = std::max(static_cast<double>(least_block), block_s * rate_hz);
-  const double riding_power = core::median(powers) / median_share(freedom_a_sample * length);
+  const double rough_m = std::sqrt(core::median(powers));
+  const auto moving = std::partition(blocks.begin(), blocks.end(), [&](const Block& block) {
+    return block.spread <= still_spread * rough_m;
+  });
+  const std::vector<Block> still(blocks.begin(), moving);
 
-  // White noise keeps within four sigma to either side for most blocks; motion does not.
-  constexpr double still_spread = 8.0;
-  const double riding_m = std::sqrt(riding_power);
-  double sum = 0.0;
-  std::size_t count = 0;
-  for (const Block& block : blocks) {
-    if (block.spread > still_spread * riding_m) continue;
-    sum += block.noise_power;
-    ++count;
-  }
-  const double resting_m = count == 0 ? riding_m : std::sqrt(sum / static_cast<double>(count));
-  return {riding_m, resting_m};
+  // Noise is read from the quiet ones of the moving blocks, since hits reach up to half of a slow
+  // log's rate. A channel that is silent at rest still has its quantisation noise while it moves.
+  powers.clear();
+  for (auto block = moving; block != blocks.end(); ++block) powers.push_back(block->noise_power);
+  if (powers.empty()) return {root_mean_power(still), root_mean_power(still)};
+  const double length = std::max(static_cast<double>(least_block), block_s * rate_hz);
+  const double riding_m =
+      std::sqrt(core::quantile(powers, quiet) / quiet_share(freedom_a_sample * length));
+  return {riding_m, still.empty() ? riding_m : std::min(riding_m, root_mean_power(still))};
 }
 
 }  // namespace clickwise::signal

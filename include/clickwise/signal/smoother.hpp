@@ -4,14 +4,27 @@
 // The readings are y_i = x(t_i) + e_i with white e of standard deviation n. A bank of quintic
 // smoothing splines with cut-offs f_0 > f_1 > ... has the zero-phase gains
 //   H_k(w) = 1 / (1 + (sin(w/2) / sin(pi f_k/rate))^6)                                 (3.1)
-// and velocity is their derivative D(w) H_k(w) (D: nine-point central difference, exact to order
-// 8). Neighbouring members differ by the bands b_k = v_k - v_(k+1), whose noise variance s_k^2
-// follows from n, D and H in closed form. The estimate is
-//   v = v_last + sum_k g_k(t) b_k,   g_k = e_k / (e_k + s_k^2),                        (3.2)
-// with e_k(t) the band's signal power around t: Wiener's gain, taken locally (N. Wiener,
-// Extrapolation, Interpolation, and Smoothing of Stationary Time Series, 1949). e_k is measured
-// twice: first as the band's power less s_k^2, then on the bands that the first gains let through.
-// Travel takes the same gains. sigma^2 is the Wiener error sum_k g_k s_k^2.
+// and velocity is their derivative (central differences of order 8, of order 16 below 600 Hz).
+// Neighbouring members differ by the bands b_k = v_k - v_(k+1), whose noise variance s_k^2 follows
+// from n, the difference and H in closed form. The estimate is
+//   v = v_last + sum_k g_k(t) b_k,   g_k^2 = w_k = e_k / (e_k + s_k^2),                (3.2)
+// with e_k(t) the band's signal power around t. w_k is Wiener's gain, taken locally (N. Wiener,
+// Extrapolation, Interpolation, and Smoothing of Stationary Time Series, 1949); its root keeps the
+// band's signal power and with it the share of time above a speed, which w_k itself would lower.
+// e_k is measured twice: first as the band's power less 1.5 s_k^2, then, over a quarter of the
+// time, on what the first gains let through. Travel takes the same gains. While nothing but noise
+// is seen for some tenths of a second, only v_last (4 Hz) is let through. The error's variance is
+//   sigma^2 = sum_k 2 w_k / (1 + g_k) u_k,                                             (3.3)
+// u_k being the noise that H_k - H_(k+1), as an amplitude gain of power, leaves of the derivative.
+//
+// Measured on invented rides (quarter car, hits, kickers, bottom-outs; 12 bits over 170 mm), rms
+// velocity error as a share of the velocity's rms, plain central difference in brackets:
+//   rate     0.6 counts of noise    2.5 counts
+//   200 Hz   2.4-2.9 % (5.5 %)      4.2-5.4 % (6.8 %)
+//   500 Hz   1.4-1.8 % (2.9 %)      3.2-4.1 % (10 %)
+//   1 kHz    1.2-1.5 % (5.5 %)      2.6-3.3 % (21 %)
+// sigma is within 6 % of the true rms error, and 1.645 sigma hold 91-92 % of errors; at 200 Hz it
+// is 10-40 % short, since hits there hold motion above half of the rate, which no sigma can see.
 #pragma once
 
 #include <optional>
@@ -26,7 +39,7 @@ inline constexpr double longest_span_s = 1.0;
 struct SmootherOptions {
   // Quadratic Savitzky-Golay fits over this span (s, above 0, at most longest_span_s) in place of
   // the adaptive smoother. Their sigma holds the noise but not what the fit flattens.
-  std::optional<double> fixed_span_s;
+  std::optional<double> fixed_span_s = std::nullopt;
 
   // Decay time, to both sides, over which the power of a band is averaged (s, > 0); slow bands take
   // longer.
