@@ -235,6 +235,8 @@ void find_comment_header(TextFormat& format, const Trial& trial, std::size_t dat
 }  // namespace
 
 TextFormat sniff_text_log(std::string_view text, const std::string& path) {
+  // A card that was laid out in advance leaves zeros behind a log that was cut off.
+  text = text.substr(0, text.find_last_not_of('\0') + 1);
   TextFormat format;
   const std::size_t begin = check_encoding(text, path);
   format.byte_order_mark = begin > 0;

@@ -42,9 +42,10 @@ void add_channels(run::Recording& recording, const TextRows& rows, const Request
     rows.refuse_words(column, index);
     run::Channel channel{column_label(rows.format(), index),
                          kept_readings(std::move(column.values), dropped)};
+    const auto unread = std::count_if(channel.readings.begin(), channel.readings.end(),
+                                      [](double reading) { return std::isnan(reading); });
     const auto missing =
-        static_cast<long long>(std::count_if(channel.readings.begin(), channel.readings.end(),
-                                             [](double reading) { return std::isnan(reading); }));
+        static_cast<long long>(unread) - static_cast<long long>(columns.rows - columns.whole_rows);
     recording.faults.add(run::FaultKind::missing, channel.name, missing,
                          static_cast<double>(missing) * recording.interval_s);
     recording.channels.push_back(std::move(channel));
