@@ -14,8 +14,10 @@ constexpr std::array<double, 9> converter_ends{0.0,     255.0,   1023.0,   4095.
                                                16383.0, 65535.0, -32768.0, 32767.0};
 constexpr double outside_at_converter_end_share = 0.01;  // of the stroke
 constexpr std::size_t fewest_at_converter_end = 3;
-constexpr double held_flat_s = 20e-3;  // a turning point beyond the stroke is shorter
-constexpr double moving_share = 0.10;  // of its whole range: what another channel moves
+constexpr double held_flat_s = 20e-3;      // a turning point beyond the stroke is shorter
+constexpr double moving_share = 0.05;      // of its whole range: what another channel moves
+constexpr std::size_t unusual_flats = 20;  // longest runs of one reading that may be faults
+constexpr std::size_t usual_flats = 5;     // so many times the usual longest run is stuck
 
 double metres_outside(const FaultSearch& search, std::size_t i) {
   return std::max(search.travel_m[i] - search.range.stroke_m, -search.travel_m[i]);
@@ -83,6 +85,40 @@ private:
   std::vector<double> whole_;
 };
 
+// Runs of one and the same reading, two samples or more.
+std::vector<run::Stretch> flat_stretches(const FaultSearch& search,
+                                         const std::vector<run::Stretch>& runs) {
+  std::vector<run::Stretch> flats;
+  for (const run::Stretch& run : runs) {
+    for (std::size_t i = run.begin; i < run.end;) {
+      const run::Stretch flat{i, flat_until(search, i, run.end, 0.0)};
+      if (flat.end - flat.begin >= 2) flats.push_back(flat);
+      i = flat.end;
+    }
+  }
+  return flats;
+}
+
+// How long this channel's readings usually stay the same at most: a channel with noise never rests.
+// The longest few may be the faults that are looked for.
+std::size_t usual_flat_samples(std::vector<run::Stretch> flats) {
+  if (flats.size() <= unusual_flats) return 1;
+  const auto place = flats.begin() + static_cast<std::ptrdiff_t>(unusual_flats);
+  std::ranges::nth_element(flats, place, std::ranges::greater{},
+                           [](const run::Stretch& flat) { return flat.end - flat.begin; });
+  return place->end - place->begin;
+}
+
+// How long a reading at this travel may stay the same. The ground and the air hold an end at its
+// stops, noise or not.
+std::size_t stuck_samples(const FaultSearch& search, double travel_m, std::size_t usual) {
+  const ReadingFaultOptions& options = search.options;
+  if (travel_m < options.extended_m) return search.samples(options.stuck_extended_s, 3);
+  const std::size_t most = search.samples(options.stuck_s, 3);
+  if (travel_m > search.range.stroke_m - options.extended_m) return most;
+  return std::clamp(usual, std::min(most, search.samples(options.stuck_noisy_s, 3)), most);
+}
+
 }  // namespace
 
 Masked mask_saturated(FaultSearch& search) {
@@ -103,16 +139,15 @@ Masked mask_saturated(FaultSearch& search) {
 Masked mask_stuck(FaultSearch& search) {
   Masked masked;
   const OtherChannels others(search);
-  for (const run::Stretch& run : search.usable_runs()) {
-    for (std::size_t i = run.begin; i < run.end;) {
-      const run::Stretch held{i, flat_until(search, i, run.end, 0.0)};
-      const double limit_s = search.travel_m[i] < search.options.extended_m
-                                 ? search.options.stuck_extended_s
-                                 : search.options.stuck_s;
-      if (held.end - held.begin >= search.samples(limit_s, 3) && others.move(held.begin, held.end))
-        mask(search, padded(held, run), masked);
-      i = held.end;
-    }
+  const auto runs = search.usable_runs();
+  const std::vector<run::Stretch> flats = flat_stretches(search, runs);
+  const std::size_t usual = usual_flats * usual_flat_samples(flats);
+  for (const run::Stretch& flat : flats) {
+    const std::size_t limit = stuck_samples(search, search.travel_m[flat.begin], usual);
+    if (flat.end - flat.begin < limit || !others.move(flat.begin, flat.end)) continue;
+    const auto within =
+        std::ranges::find_if(runs, [&](const run::Stretch& run) { return flat.begin < run.end; });
+    mask(search, padded(flat, *within), masked);
   }
   return masked;
 }

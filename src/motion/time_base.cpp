@@ -1,5 +1,7 @@
 #include "clickwise/motion/time_base.hpp"
 
+#include <fmt/format.h>
+
 #include <algorithm>
 #include <cmath>
 #include <limits>
@@ -12,6 +14,8 @@ namespace {
 
 constexpr double even_share = 0.03;    // of an interval
 constexpr double drift_samples = 0.2;  // over a whole stretch
+
+constexpr double most_samples = 2e8;  // two days at 1 kHz: more is a clock gone wrong
 
 // t = first + step i, least squares over a stretch.
 struct Line {
@@ -82,6 +86,11 @@ UniformClock uniform_clock(const run::Recording& recording) {
                          "give a log with two samples or more whose time goes forward");
   UniformClock clock;
   const double span = (t_s.back() - t_s.front()) / recording.interval_s;
+  if (!(span >= 0.0 && span < most_samples))
+    throw core::JobError({recording.name},
+                         fmt::format("its clock spans {:.3g} s in steps of {:.3g} s",
+                                     t_s.back() - t_s.front(), recording.interval_s),
+                         "check the time column and its unit, or cut the log at the clock's jump");
   clock.base = {t_s.front(), 1.0 / recording.interval_s,
                 static_cast<std::size_t>(std::llround(span)) + 1};
   clock.place.resize(t_s.size());

@@ -91,6 +91,14 @@ TEST_CASE("a constant reading is stuck only while another channel moves", "[moti
   }
 }
 
+TEST_CASE("a noisy channel that is constant for half a second is stuck", "[motion]") {
+  auto recording = ride_at(1000.0, 0.6);
+  for (std::size_t i = 9000; i < 9500; ++i) fork_of(recording)[i] = fork_of(recording)[9000];
+  const auto found = search(recording);
+  CHECK(found.faults.count(FaultKind::stuck) == 1);
+  CHECK(wrongly_masked(found, 8999, 9501) <= 1);
+}
+
 TEST_CASE("an input at the converter's end outside the stroke is saturated", "[motion]") {
   const auto rail = GENERATE(0.0, 4095.0);
   const auto length = GENERATE(4u, 40u, 10000u);

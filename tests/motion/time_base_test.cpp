@@ -65,4 +65,7 @@ TEST_CASE("a log without a stretch of time is an impossible job", "[motion]") {
   recording = logged({}, {}, 0.002, {.rate_hz = 1000.0});
   recording.interval_s = 0.0;
   CHECK_THROWS_AS(motion::uniform_clock(recording), clickwise::core::JobError);
+  recording.interval_s = 1e-3;
+  recording.t_s.back() = 1e12;
+  CHECK_THROWS_AS(motion::uniform_clock(recording), clickwise::core::JobError);
 }

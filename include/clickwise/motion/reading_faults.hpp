@@ -19,6 +19,7 @@ struct SensorRange {
 // Limits of what a suspension does; common practice, no source.
 struct ReadingFaultOptions {
   double stuck_s = 1.0;              // constant so long while another channel moves
+  double stuck_noisy_s = 0.25;       // the same for a channel whose noise keeps it from resting
   double stuck_extended_s = 4.0;     // the same near full extension, where an end rests in the air
   double extended_m = 5e-3;          // "near full extension"
   double held_outside_share = 0.03;  // of the stroke: held flat so far outside it is no travel
@@ -37,7 +38,9 @@ struct ReadingFaults {
 // Finds, in this order, each on what the ones before left:
 //   saturated  held flat outside the stroke: three equal readings at a converter's end, or 20 ms
 //              anywhere; an end held at its stroke by the ground is not;
-//   stuck      one and the same reading for stuck_s or more while another channel of the log moves;
+//   stuck      one and the same reading while another channel of the log moves, for five times as
+//              long as this channel's readings usually stay the same at most, between stuck_noisy_s
+//              and stuck_s;
 //   missing    an open input: in half a second more than a quarter of the second differences ask
 //              for an impossible acceleration;
 //   spike      a few samples off their neighbours by Hampel's rule and by more than the ride's

@@ -23,7 +23,8 @@ struct UniformClock {
   std::vector<double> place;
 };
 
-// Throws core::JobError when the recording has fewer than two samples or no positive interval.
+// Throws core::JobError when the recording has fewer than two samples or no positive interval, or
+// a clock that spans more than 2e8 of them.
 UniformClock uniform_clock(const run::Recording& recording);
 
 // A channel on the base without smoothing: straight between the two readings around each point,
