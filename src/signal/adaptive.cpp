@@ -17,7 +17,13 @@ using std::numbers::pi;
 
 constexpr Eigen::Index last = bank_size - 1;  // the slowest member, which is always let through
 constexpr std::size_t chunk_samples = 16384;
-constexpr double end_fit_s = 0.012;
+// Ends: the length of the parabola that continues them, and how much larger the error is there than
+// (3.3) says, measured on seconds cut out of invented rides at 200 Hz and 1 kHz.
+constexpr double end_fit_s = 0.010;
+constexpr double near_end_excess = 4.0;
+constexpr double near_end_decay_s = 0.0025;
+constexpr double far_end_excess = 0.6;
+constexpr double far_end_decay_s = 0.04;
 
 // Central differences sum_j c_j (y(i+j) - y(i-j)) per interval, of order twice their number
 // (B. Fornberg, Math. Comp. 51:699-706, 1988, table 1). Slow logs hold motion up to their last
@@ -121,19 +127,20 @@ struct AdaptiveSmoother::Chunk {
 
 AdaptiveSmoother::AdaptiveSmoother(double rate_hz, double noise_m, double memory_s)
     : rate_hz_(rate_hz),
+      noise_m_(noise_m),
       reach_(rate_hz < slow_log_hz ? long_reach : short_reach),
       bank_(rate_hz),
       alert_keep_(std::exp(-1.0 / (alert_s * rate_hz))) {
   const Lanes decay_s = (periods / bank_.cutoff_hz()).max(memory_s);
   first_keep_ = keep(decay_s, rate_hz);
   second_keep_ = keep(second_share * decay_s, rate_hz);
-  find_variances(noise_m);
+  find_variances();
   const double longest_s = std::max(decay_s.maxCoeff(), alert_s);
   margin_ = bank_.settling_samples() + reach_ +
             static_cast<std::size_t>(std::ceil(decays * longest_s * rate_hz));
 }
 
-void AdaptiveSmoother::find_variances(double noise_m) {
+void AdaptiveSmoother::find_variances() {
   constexpr int steps = 2048;
   Lanes band = Lanes::Zero();
   Lanes step = Lanes::Zero();
@@ -153,8 +160,8 @@ void AdaptiveSmoother::find_variances(double noise_m) {
     slowest_noise_gain_ += d * faster * faster;
   }
   slowest_noise_gain_ = std::sqrt(slowest_noise_gain_);
-  band_variance_ = (band * noise_m * noise_m).cast<float>();
-  step_variance_ = (step * noise_m * noise_m).cast<float>();
+  band_variance_ = (band * noise_m_ * noise_m_).cast<float>();
+  step_variance_ = (step * noise_m_ * noise_m_).cast<float>();
 }
 
 template <std::size_t reach>
@@ -231,17 +238,19 @@ void AdaptiveSmoother::combine(Chunk& chunk, Smoothed& out) const {
   BandLanes only_last = BandLanes::Zero();
   only_last[last] = 1.0F;
   BandLanes second = BandLanes::Zero();
+  float sigma = 0.0F;
   for (std::size_t i = reach_; i < margin_ + chunk.count; ++i) {
     second = chunk.power[i] + second_keep_ * (second - chunk.power[i]);
     if (i < margin_) continue;
     const BandLanes share = (chunk.alert[i] * second / (second + noise)).max(only_last);
     const BandLanes gain = share.sqrt();
     const std::size_t at = chunk.first + i - margin_;
-    if (at % 16 == 0) chunk.passed.push_back(static_cast<double>(gain.sum()));
     out.position_m[at] = (gain.cast<double>() * chunk.travel.steps(i)).sum();
     out.velocity_m_s[at] = static_cast<double>((gain * chunk.velocity.steps(i)).sum());
-    out.sigma_m_s[at] =
-        static_cast<double>(std::sqrt((2.0F * share / (1.0F + gain) * step_variance_).sum()));
+    // Gains change little from reading to reading, so these are looked at now and then.
+    if (at % 4 == 0) sigma = std::sqrt((2.0F * share / (1.0F + gain) * step_variance_).sum());
+    if (at % 16 == 0) chunk.passed.push_back(static_cast<double>(gain.sum()));
+    out.sigma_m_s[at] = static_cast<double>(sigma);
   }
 }
 
@@ -252,6 +261,18 @@ double AdaptiveSmoother::effective_cutoff_hz(double open_gains) const {
   return cutoff_hz[last] * std::pow(cutoff_hz[0] / cutoff_hz[last], share);
 }
 
+void AdaptiveSmoother::widen_at_ends(std::vector<double>& sigma_m_s) const {
+  const std::size_t n = sigma_m_s.size();
+  const auto reach = static_cast<std::size_t>(8.0 * far_end_decay_s * rate_hz_) + 1;
+  for (std::size_t i = 0; i < std::min(n, reach); ++i) {
+    const double t = static_cast<double>(i) / rate_hz_;
+    const double factor = 1.0 + near_end_excess * std::exp(-t / near_end_decay_s) +
+                          far_end_excess * std::exp(-t / far_end_decay_s);
+    sigma_m_s[i] *= factor;
+    sigma_m_s[n - 1 - i] *= factor;
+  }
+}
+
 Smoothed AdaptiveSmoother::smooth(std::span<const double> readings_m) const {
   const std::size_t n = readings_m.size();
   Smoothed out;
@@ -259,7 +280,7 @@ Smoothed AdaptiveSmoother::smooth(std::span<const double> readings_m) const {
   out.velocity_m_s.resize(n);
   out.sigma_m_s.resize(n);
   const auto fit = static_cast<std::size_t>(std::max(1.0, std::round(end_fit_s * rate_hz_)));
-  const OddReflection continued(readings_m, fit);
+  const OddReflection continued(readings_m, fit, noise_m_);
   Chunk chunk;
   for (std::size_t first = 0; first < n; first += chunk_samples) {
     chunk.first = first;
@@ -277,6 +298,7 @@ Smoothed AdaptiveSmoother::smooth(std::span<const double> readings_m) const {
     find_alert(chunk);
     combine(chunk, out);
   }
+  widen_at_ends(out.sigma_m_s);
   out.cutoff_hz = effective_cutoff_hz(core::median(chunk.passed));
   return out;
 }

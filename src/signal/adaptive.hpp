@@ -3,6 +3,7 @@
 
 #include <cstddef>
 #include <span>
+#include <vector>
 
 #include "clickwise/signal/smoother.hpp"
 #include "spline_bank.hpp"
@@ -26,16 +27,18 @@ public:
 private:
   struct Chunk;
 
-  void find_variances(double noise_m);
+  void find_variances();
   template <std::size_t reach>
   void run_bank(Chunk& chunk) const;
   void average_power(Chunk& chunk) const;
   void find_first_gains(Chunk& chunk) const;
   void find_alert(Chunk& chunk) const;
   void combine(Chunk& chunk, Smoothed& out) const;
+  void widen_at_ends(std::vector<double>& sigma_m_s) const;
   double effective_cutoff_hz(double open_gains) const;
 
   double rate_hz_;
+  double noise_m_;
   std::size_t reach_;  // of the derivative to either side, samples
   SplineBank bank_;
   double alert_keep_;        // share of a running average kept from sample to sample: of the alert,

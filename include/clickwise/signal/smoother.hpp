@@ -73,10 +73,10 @@ SmootherModel fit_smoother(const std::vector<std::span<const double>>& stretches
 // The shortest stretch that has a velocity (samples).
 std::size_t shortest_stretch(const SmootherModel& model);
 
-// Travel and velocity of one unbroken stretch. Ends: the stretch is continued by odd reflection,
-// and sigma grows towards them. Reversing the stretch in time reverses position and sigma, and
-// turns the sign of velocity. Throws std::invalid_argument on readings that are not finite or
-// fewer than shortest_stretch(). O(n).
+// Travel and velocity of one unbroken stretch. Ends: the stretch is continued by odd reflection
+// with the end's acceleration kept; sigma grows by 1 + 4 exp(-t/2.5 ms) + 0.6 exp(-t/40 ms).
+// Reversing the stretch in time reverses position and sigma, and turns the sign of velocity. Throws
+// std::invalid_argument on readings that are not finite or fewer than shortest_stretch(). O(n).
 Smoothed smooth(std::span<const double> readings_m, const SmootherModel& model);
 
 // One sentence for the report: what was used and what the noise is.
