@@ -2,7 +2,6 @@
 
 #include <algorithm>
 #include <cmath>
-#include <cstdlib>
 
 #include "clickwise/core/units.hpp"
 
@@ -11,6 +10,7 @@ namespace clickwise::sim {
 namespace {
 
 constexpr double gravity = core::standard_gravity_m_s2;
+constexpr double hop_s = 0.06;  // airtime over an obstacle of the relief's size; see (R8)
 
 // Wheel travel at a shaft travel: the table turned round, by bisection between its nodes.
 class WheelOf {
@@ -161,7 +161,7 @@ void guess_at_stops(const VehicleEnd& end, Steps& steps) {
 // Ground under the wheel in the air from step `from` to `to`: a straight line over solid ground,
 // from take-off to landing, less what hangs; never above the wheel.
 void hang_ground(Forcing& forcing, const std::vector<double>& z, std::size_t from, std::size_t to,
-                 double hang) {
+                 const InverseOptions& options) {
   const double h = forcing.step_s;
   const bool takes_off = from > 0, lands = to < forcing.steps();
   std::vector<double> fall(to - from + 2);  // of the frame, from rest at take-off
@@ -175,15 +175,14 @@ void hang_ground(Forcing& forcing, const std::vector<double>& z, std::size_t fro
   const double start = takes_off ? forcing.ground_m[from - 1] : z[from];
   const double stop = lands ? forcing.ground_m[to] : z[std::min(to, z.size() - 1)];
   const double seconds = span * h;
-  static const double tau = getenv("TAU") ? atof(getenv("TAU")) : 0.06;
-  static const double fade = getenv("FADE") ? atof(getenv("FADE")) : 9.0;
-  const double sagitta = 1.0 - std::exp(-std::pow(seconds / tau, 1.5));
-  if (seconds > fade) hang = 0.0;
+  const double depth = seconds > options.longest_hop_s
+                           ? 0.0
+                           : options.relief_m * (1.0 - std::exp(-std::pow(seconds / hop_s, 1.5)));
   for (std::size_t n = from; n < to; ++n) {
     const double k = static_cast<double>(n - from + 1);
     const double part = k / span;
     const double chord = start + (stop + fall.back() - start) * part - fall[n - from + 1];
-    const double below = chord - hang * sagitta * 4.0 * part * (1.0 - part);
+    const double below = chord - depth * 4.0 * part * (1.0 - part);
     forcing.ground_m[n] = static_cast<float>(std::min(below, z[n]));
   }
 }
@@ -204,7 +203,7 @@ void lay_ground_under(const VehicleEnd& end, const Steps& steps, const std::vect
     if (forcing.airborne[n] == 0) continue;
     std::size_t to = n;
     while (to < forcing.steps() && forcing.airborne[to] != 0) ++to;
-    hang_ground(forcing, z, n, to, options.hang);
+    hang_ground(forcing, z, n, to, options);
     n = to;
   }
 }

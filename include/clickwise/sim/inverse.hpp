@@ -41,7 +41,8 @@ struct InverseOptions {
   double least_tyre_n = 60.0;   // a recovered tyre force below it: the wheel is in the air
   double still_m_s = 0.01;      // below this shaft speed friction and platforms are not known
   double stop_margin_m = 4e-4;  // this close to the ends of the stroke the stops may carry
-  double hang = 0.0;            // of the unknown ground below the chord; see (R8)
+  double relief_m = 0.025;      // how far the unknown ground hangs below the chord; see (R8)
+  double longest_hop_s = 0.2;   // a longer flight is a jump: its ground is the chord
 };
 
 // The exact inverse of ride_forward's scheme: with the same VehicleEnd it gives the ride back,
