@@ -209,12 +209,9 @@ void AdaptiveSmoother::find_first_gains(Chunk& chunk) const {
   const BandLanes toll = first_toll * band_variance_;
   BandLanes first = BandLanes::Zero();
   BandLanes second = BandLanes::Zero();
-  float excess = 0.0F;
   for (std::size_t i = chunk.readings.size() - reach_; i-- > reach_;) {
     first = chunk.power[i] + first_keep_ * (first - chunk.power[i]);
-    // Its average is slow, so one in four will do.
-    if (i % 4 == 0) excess = std::min((first * scale - freedom).maxCoeff(), alert_cap);
-    chunk.alert[i] = excess;
+    chunk.alert[i] = std::min((first * scale - freedom).maxCoeff(), alert_cap);
     const BandLanes gain = (1.0F - toll / (first + tiny)).max(0.0F);
     const BandLanes power = (gain * chunk.velocity.steps(i)).square();
     second = power + second_keep_ * (second - power);

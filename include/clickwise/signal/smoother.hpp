@@ -20,11 +20,12 @@
 // Measured on invented rides (quarter car, hits, kickers, bottom-outs; 12 bits over 170 mm), rms
 // velocity error as a share of the velocity's rms, plain central difference in brackets:
 //   rate     0.6 counts of noise    2.5 counts
-//   200 Hz   2.4-2.9 % (5.5 %)      4.2-5.4 % (6.8 %)
+//   200 Hz   2.4-3.1 % (5.5 %)      4.2-5.4 % (6.9 %)
 //   500 Hz   1.4-1.8 % (2.9 %)      3.2-4.1 % (10 %)
 //   1 kHz    1.2-1.5 % (5.5 %)      2.6-3.3 % (21 %)
-// sigma is within 6 % of the true rms error, and 1.645 sigma hold 91-92 % of errors; at 200 Hz it
-// is 10-40 % short, since hits there hold motion above half of the rate, which no sigma can see.
+// Figures are ranges over three kinds of ride. sigma is within 7 % of the true rms error from 500
+// Hz up, and 1.645 sigma hold 91-92 % of errors; at 200 Hz it is 10-50 % short, since hits there
+// hold motion above half of the rate, which no sigma can see.
 #pragma once
 
 #include <optional>
