@@ -27,6 +27,7 @@ core::Polyline read_speeds(const io::TomlValue& value) {
 
 SpeedPlan read_ride(const io::TomlTable& ride) {
   SpeedPlan plan;
+  plan.place = ride.place();
   plan.length_m = ride.number("length_m", rides_m);
   plan.duration_s = ride.number("duration_s", rides_s);
   if (plan.length_m.has_value() == plan.duration_s.has_value())

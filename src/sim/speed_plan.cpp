@@ -10,6 +10,13 @@ namespace {
 
 constexpr double push_m_s2 = 4.0;
 constexpr double slowest_m_s = 0.3;
+constexpr std::size_t most_samples = 10'000'000;
+
+void require_room(const SpeedPlan& plan, std::size_t samples) {
+  if (samples > most_samples)
+    throw core::JobError(plan.place, "the ride has more than ten million samples",
+                         "make it shorter or faster, or lower the logger's rate");
+}
 
 double planned_speed(const SpeedPlan& plan, double ridden_s, double distance_m) {
   const auto& points = plan.speed_m_s.x();
@@ -46,6 +53,7 @@ Progress progress(const SpeedPlan& plan, double rate_hz) {
   for (std::size_t i = 0;; ++i) {
     const double ridden = static_cast<double>(i) / rate_hz;
     if (distance >= end_m || ridden >= end_s) break;
+    require_room(plan, out.distance_m.size());
     const double speed = speed_now(plan, ridden, distance);
     out.distance_m.push_back(distance);
     out.speed_m_s.push_back(speed);
@@ -54,6 +62,7 @@ Progress progress(const SpeedPlan& plan, double rate_hz) {
   out.ride_begin_s = static_cast<double>(begin) / rate_hz;
   out.ride_end_s = static_cast<double>(out.distance_m.size()) / rate_hz;
   stand(out, plan.stand_after_s, rate_hz);
+  require_room(plan, out.distance_m.size());
   return out;
 }
 

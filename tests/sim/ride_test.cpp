@@ -134,6 +134,15 @@ TEST_CASE("band seconds of the truth add up to the riding time", "[sim]") {
   CHECK(seconds == Approx(all_s - 6.0).margin(2e-3));  // 4 s of standing still count
 }
 
+TEST_CASE("a ride too long to hold is refused with its place", "[sim]") {
+  const Folder folder;
+  const Scene scene =
+      folder.scene(changed(scene_text, "length_m = 60.0\nspeed = [[0, 7.0], [60, 9.0]]",
+                           "length_m = 40000.0\nspeed = [[0, 0.0]]"));
+  CHECK_THROWS_AS(simulate(scene), core::JobError);
+  CHECK_THROWS_WITH(simulate(scene), Catch::Contains("scene.toml:4"));
+}
+
 TEST_CASE("a bike without a spring cannot be ridden, and the key is named", "[sim]") {
   const Folder folder;
   folder.write("bike.toml",

@@ -83,7 +83,7 @@ double landing_travel(double step_s) {
 
 // Check values 1.4: overshoot and peak time of a second-order system (Ogata, Modern Control
 // Engineering, transient response). The wheel's give: (k/k_t) = 3e-4; first-order step: h wn/2 =
-// 3e-4 at 25 us, and the damper's lag. Tolerance rel 2e-3.
+// 3e-4 at 25 us, and the damper's lag. Tolerance rel 3e-3.
 TEST_CASE("free decay overshoots and peaks as a second-order system does", "[sim]") {
   struct Row {
     double ratio, overshoot, peak_wn;

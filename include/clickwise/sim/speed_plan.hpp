@@ -4,11 +4,13 @@
 #include <optional>
 #include <vector>
 
+#include "clickwise/core/errors.hpp"
 #include "clickwise/core/polyline.hpp"
 
 namespace clickwise::sim {
 
 struct SpeedPlan {
+  core::Place place;                 // for messages
   bool over_time = false;            // points over seconds of riding instead of metres of trail
   core::Polyline speed_m_s;          // held beyond its ends
   double pace = 1.0;                 // factor on every speed
@@ -27,7 +29,7 @@ struct Progress {
 };
 
 // Rolls off and brakes at 4 m/s^2; never slower than 0.3 m/s between the two, so that every ride
-// ends. First order in 1 / rate.
+// ends. First order in 1 / rate. Throws core::JobError beyond ten million samples (2.8 h at 1 kHz).
 Progress progress(const SpeedPlan& plan, double rate_hz);
 
 }  // namespace clickwise::sim
