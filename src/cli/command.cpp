@@ -9,8 +9,24 @@
 
 #include "clickwise/core/errors.hpp"
 #include "clickwise/io/atomic_file.hpp"
+#include "clickwise/workflow/splits.hpp"
 
 namespace clickwise::cli {
+
+namespace {
+
+void write_to_stdout(const std::string& text) {
+  const std::size_t written = std::fwrite(text.data(), 1, text.size(), stdout);
+  if (written != text.size() || std::fflush(stdout) != 0 || std::ferror(stdout) != 0)
+    throw core::JobError({"stdout"}, "the output could not be written", "check where it is sent");
+}
+
+CLI::Validator not_empty() {
+  return CLI::Validator(
+      [](const std::string& text) { return text.empty() ? std::string("is empty") : ""; }, "");
+}
+
+}  // namespace
 
 CLI::App* add_command(CLI::App& app, Common& common, const std::string& name,
                       const std::string& does) {
@@ -20,48 +36,45 @@ CLI::App* add_command(CLI::App& app, Common& common, const std::string& name,
                    "speed that parts low from high, mm/s; or END.DIRECTION=SPEED; repeatable")
       ->expected(1)
       ->multi_option_policy(CLI::MultiOptionPolicy::TakeAll)
-      ->type_name("SPEED");
+      ->type_name("SPEED")
+      ->each([](const std::string& text) { workflow::parse_splits({text}); });
   command->add_flag("--quiet", common.quiet, "print no summary");
+  command->set_version_flag("--version", program_version);
   return command;
 }
 
 void add_output(CLI::App& command, Output& output, const std::string& writes) {
   command.add_option("-o,--output", output.folder, "folder to write " + writes + " into")
-      ->type_name("DIR");
+      ->type_name("DIR")
+      ->check(not_empty());
   add_json_output(command, output);
 }
 
 void add_json_output(CLI::App& command, Output& output) {
   command.add_option("--json", output.json_file, "file to write the JSON to; - prints it alone")
-      ->type_name("FILE");
+      ->type_name("FILE")
+      ->check(not_empty());
 }
 
 void write_json(const Output& output, const std::string& json) {
   if (output.json_file.empty()) return;
   if (output.json_file != "-") {
-    io::write_whole(output.json_file, json);
+    io::write_atomically(output.json_file, json);
     return;
   }
-  std::fwrite(json.data(), 1, json.size(), stdout);
-  if (std::fflush(stdout) != 0)
-    throw core::JobError({"stdout"}, "the JSON could not be written", "check where it is piped to");
+  write_to_stdout(json);
 }
 
 std::string write_into(const std::string& folder, const std::string& file,
                        const std::string& text) {
-  std::error_code error;
-  std::filesystem::create_directories(folder, error);
-  if (error)
-    throw core::InputError({folder}, "the folder cannot be made: " + error.message(),
-                           "give -o a folder you may write to");
   const std::string path = (std::filesystem::path(folder) / file).string();
-  io::write_whole(path, text);
+  io::write_atomically(path, text);
   return path;
 }
 
 void print(const Common& common, const Output& output, const std::string& text) {
   if (common.quiet || output.json_file == "-") return;
-  std::fwrite(text.data(), 1, text.size(), stdout);
+  write_to_stdout(text);
 }
 
 bool emphasis_on_stdout() {

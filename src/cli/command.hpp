@@ -8,6 +8,8 @@
 
 namespace clickwise::cli {
 
+inline constexpr const char* program_version = "clickwise " CLICKWISE_VERSION;
+
 // Options every command takes.
 struct Common {
   std::vector<std::string> splits;
@@ -30,7 +32,8 @@ void add_json_output(CLI::App& command, Output& output);
 // Writes text to the JSON file, whole or not at all, or to stdout; nothing when none was asked for.
 void write_json(const Output& output, const std::string& json);
 
-// Makes the folder and writes a file into it, whole or not at all. Gives the file's path.
+// Makes the folder where it is missing and writes a file into it, whole or not at all. Gives the
+// file's path.
 std::string write_into(const std::string& folder, const std::string& file, const std::string& text);
 
 // Prints a summary, unless --quiet, or the JSON has stdout to itself.

@@ -20,12 +20,32 @@ int complain(int status, const std::string& words) {
   return status;
 }
 
+// The command that was being given, as in "clickwise review --help".
+std::string help_of(const CLI::App& app) {
+  const auto given = app.get_subcommands();
+  return "see clickwise " + (given.empty() ? "" : given.front()->get_name() + " ") + "--help";
+}
+
 int usage_error(const CLI::App& app, const CLI::ParseError& error) {
   if (error.get_exit_code() == 0) return app.exit(error);  // --help, --version
   std::string words = error.what();
   for (char& letter : words)
     if (letter == '\n') letter = ' ';
-  return complain(input_not_read, fmt::format("command line: {}; see clickwise --help", words));
+  return complain(input_not_read, fmt::format("command line: {}; {}", words, help_of(app)));
+}
+
+// A first word that is no command, in place of the parser's "a subcommand is required".
+void refuse_unknown_command(const CLI::App& app, int argc, const char* const* argv) {
+  const std::string word = argc > 1 ? argv[1] : "";
+  if (word.starts_with('-')) return;
+  std::string names;
+  for (const CLI::App* command : app.get_subcommands({})) {
+    if (command->get_name() == word) return;
+    names += (names.empty() ? "" : ", ") + command->get_name();
+  }
+  throw core::InputError({"command line"},
+                         word.empty() ? "a command is missing" : "there is no command " + word,
+                         "the commands are " + names + "; see clickwise --help");
 }
 
 }  // namespace
@@ -35,7 +55,7 @@ int run(int argc, const char* const* argv) {
       "clickwise reads the log of a mountain-bike ride and says which suspension adjuster to turn, "
       "which way, how many clicks and how sure it is - or to leave it.",
       "clickwise");
-  app.set_version_flag("--version", "clickwise " CLICKWISE_VERSION);
+  app.set_version_flag("--version", program_version);
   app.require_subcommand(1);
   Common common;
   add_review(app, common);
@@ -43,6 +63,7 @@ int run(int argc, const char* const* argv) {
   add_simulate(app, common);
   add_damper(app, common);
   try {
+    refuse_unknown_command(app, argc, argv);
     app.parse(argc, argv);
     return 0;
   } catch (const CLI::ParseError& error) {
