@@ -47,7 +47,7 @@ std::vector<Window> windows_of(const Symptom& symptom, const EndRide& ride) {
     case SymptomKind::hard_bottoming:
       return before(hard_bottom_outs(ride));
     case SymptomKind::returns_too_fast:
-      return before(*ride.top_outs);
+      return before(top_outs_on_the_ground(ride));
     case SymptomKind::packs_down: {
       std::vector<Window> windows;
       for (const run::HitTrain& train : *ride.trains)
@@ -174,12 +174,13 @@ Step step_for(const Symptom& symptom, const EndRide& ride, const Candidate& cand
               const AdviceOptions& options) {
   const int most = std::min(options.most_clicks, candidate.room);
   const int clicks = clicks_needed(symptom, ride, candidate, most);
-  Step step{ride.name,
-            candidate.move.adjuster,
-            candidate.range.setting,
-            target_setting(candidate, clicks),
-            symptom,
-            why(symptom, ride, candidate)};
+  Step step;
+  step.end = ride.name;
+  step.adjuster = candidate.move.adjuster;
+  step.from = candidate.range.setting;
+  step.to = target_setting(candidate, clicks);
+  step.symptom = symptom;
+  step.why = why(symptom, ride, candidate);
   step.confidence = symptom.certainty() * (ride.damper->assumed() ? assumed_curve_confidence : 1.0);
   if (symptom.kind == SymptomKind::hard_bottoming && ride.sprung_mass_kg)
     step.predicted.push_back(

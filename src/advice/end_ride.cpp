@@ -39,6 +39,19 @@ private:
 
 }  // namespace
 
+std::vector<run::EndStop> top_outs_on_the_ground(const EndRide& ride) {
+  constexpr double take_off_s = 0.15;  // an end extends ahead of the moment both are long
+  std::vector<run::EndStop> kept;
+  for (const run::EndStop& stop : *ride.top_outs) {
+    const auto in_the_air = [&](const run::Airtime& air) {
+      return stop.t_s > air.begin_s - take_off_s && stop.t_s < air.end_s;
+    };
+    if (!ride.airtimes || std::none_of(ride.airtimes->begin(), ride.airtimes->end(), in_the_air))
+      kept.push_back(stop);
+  }
+  return kept;
+}
+
 damper::RideDensity ride_density(const EndRide& ride) {
   const run::TimeBase& time = ride.motion->time;
   return ride_density(ride, {{time.at(0), time.at(time.samples)}});

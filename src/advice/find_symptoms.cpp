@@ -187,9 +187,9 @@ void find_event_symptoms(const Evidence& evidence, const bike::Aims& aims, unsig
                                           aims.bottom_outs_per_minute));
   add_if_crossed(symptoms, rate_above_aim(SymptomKind::slow_bottoming, evidence, slow,
                                           aims.bottom_outs_per_minute));
-  add_if_crossed(
-      symptoms, rate_above_aim(SymptomKind::returns_too_fast, evidence,
-                               static_cast<long>(ride.top_outs->size()), aims.top_outs_per_minute));
+  add_if_crossed(symptoms, rate_above_aim(SymptomKind::returns_too_fast, evidence,
+                                          static_cast<long>(top_outs_on_the_ground(ride).size()),
+                                          aims.top_outs_per_minute));
   if (ride.trains->size() >= 3)
     add_if_crossed(symptoms,
                    against_aim(SymptomKind::packs_down, ride, climb_mm_per_hit(ride, seed),

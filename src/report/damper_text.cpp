@@ -2,6 +2,8 @@
 
 #include <fmt/format.h>
 
+#include <cmath>
+
 #include "clickwise/core/units.hpp"
 #include "json_writer.hpp"
 #include "words.hpp"

@@ -13,7 +13,7 @@ using core::to_mm;
 constexpr double per_metre = 1.0 / core::metres_per_mm;
 
 json::string text(std::string_view words) {
-  return {words.data(), words.size()};
+  return json::string(words);
 }
 
 std::string_view source_name(run::Source source) {
@@ -175,13 +175,16 @@ json::object step_json(const advice::Step& step) {
 
 json::object front_rear_json(const std::optional<workflow::FrontRear>& both) {
   if (!both) return {};
-  json::array airtimes;
-  for (const run::Airtime& air : both->airtimes)
-    airtimes.push_back({{"begin_s", number(air.begin_s)}, {"end_s", number(air.end_s)}});
   return {{"mean_travel_difference_share", number(both->mean_travel_difference)},
           {"compression_p95_ratio", number(both->compression_p95_ratio)},
-          {"rebound_p95_ratio", number(both->rebound_p95_ratio)},
-          {"airtimes", std::move(airtimes)}};
+          {"rebound_p95_ratio", number(both->rebound_p95_ratio)}};
+}
+
+json::array airtimes_json(const std::vector<run::Airtime>& airtimes) {
+  json::array array;
+  for (const run::Airtime& air : airtimes)
+    array.push_back({{"begin_s", number(air.begin_s)}, {"end_s", number(air.end_s)}});
+  return array;
 }
 
 json::array strings(const std::vector<std::string>& texts) {
@@ -213,6 +216,7 @@ std::string review_json(const workflow::Review& review) {
                           {"log", log_json(review.log)},
                           {"ends", std::move(ends)},
                           {"front_rear", front_rear_json(review.front_rear)},
+                          {"airtimes", airtimes_json(review.airtimes)},
                           {"advice", std::move(steps)},
                           {"leave_it", text(review.advice.leave_it)},
                           {"not_for_an_adjuster", std::move(handovers)},

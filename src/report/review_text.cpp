@@ -158,7 +158,7 @@ std::string review_text(const workflow::Review& review, const TextStyle& style) 
         "  p95 speed at the wheel, front over rear: compression {:.2f}, rebound {:.2f}; "
         "in the air {} times",
         review.front_rear->compression_p95_ratio, review.front_rear->rebound_p95_ratio,
-        review.front_rear->airtimes.size());
+        review.airtimes.size());
   }
   write_list(out, "What the log was worth", fault_words(review.log.faults));
   write_list(out, "Notes", review.notes);

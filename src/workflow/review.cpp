@@ -26,9 +26,13 @@ FrontRear front_beside_rear(const Ride& ride, const std::vector<EndReview>& ends
       wheel_p95_ratio(ride.bike, front, rear, front.bands.compression, rear.bands.compression);
   both.rebound_p95_ratio =
       wheel_p95_ratio(ride.bike, front, rear, front.bands.rebound, rear.bands.rebound);
-  both.airtimes = events::airtimes(
-      {{&ride.ends[0].motion, ride.ends[0].counted}, {&ride.ends[1].motion, ride.ends[1].counted}});
   return both;
+}
+
+std::vector<run::Airtime> airtimes(const Ride& ride) {
+  std::vector<events::AirtimeEnd> ends;
+  for (const RideEnd& end : ride.ends) ends.push_back({&end.motion, end.counted});
+  return events::airtimes(ends);
 }
 
 }  // namespace
@@ -47,11 +51,14 @@ Review review(const ReviewOptions& options) {
     result.ends[i] =
         review_end(ride.bike, ride.ends[i], options.splits.end(ride.ends[i].name), dampers[i]);
   });
+  result.airtimes = airtimes(ride);
   if (ride.ends.size() == 2) result.front_rear = front_beside_rear(ride, result.ends);
 
   std::vector<advice::EndRide> views;
-  for (std::size_t i = 0; i < ride.ends.size(); ++i)
+  for (std::size_t i = 0; i < ride.ends.size(); ++i) {
     views.push_back(advice_view(ride.bike, ride.ends[i], result.ends[i], dampers[i]));
+    views.back().airtimes = &result.airtimes;
+  }
   result.advice = advice::advise(views, ride.bike.aims);
   result.missing = bike::what_is_missing(ride.bike);
   return result;

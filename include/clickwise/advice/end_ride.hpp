@@ -24,7 +24,8 @@ struct EndRide {
   const std::vector<run::EndStop>* bottom_outs = nullptr;
   const std::vector<run::EndStop>* top_outs = nullptr;
   const std::vector<run::HitTrain>* trains = nullptr;
-  const damper::Damper* damper = nullptr;  // null when the bike file has none
+  const std::vector<run::Airtime>* airtimes = nullptr;  // null when not looked for
+  const damper::Damper* damper = nullptr;               // null when the bike file has none
   std::optional<double> sprung_mass_kg;
   double compression_split_m_s = 0.0;
   double rebound_split_m_s = 0.0;
@@ -35,6 +36,9 @@ struct Window {
   double begin_s = 0.0;
   double end_s = 0.0;
 };
+
+// Top-outs on the ground: one at a take-off or in the air is the ride's, not the rebound's.
+std::vector<run::EndStop> top_outs_on_the_ground(const EndRide& ride);
 
 // Seconds over shaft speed of the counted samples, in cells of 5 mm/s; the whole ride, or within
 // windows (which must not overlap).

@@ -47,7 +47,6 @@ struct FrontRear {
   double mean_travel_difference = 0.0;  // front less rear, as a share of each stroke
   double compression_p95_ratio = 0.0;   // front over rear, at the wheel
   double rebound_p95_ratio = 0.0;
-  std::vector<run::Airtime> airtimes;
 };
 
 struct Review {
@@ -55,6 +54,7 @@ struct Review {
   LogSummary log;
   std::vector<EndReview> ends;
   std::optional<FrontRear> front_rear;
+  std::vector<run::Airtime> airtimes;  // of both ends together, or of the one that was logged
   advice::Advice advice;
   std::vector<std::string> missing;  // what each further key of the bike file would bring
   std::vector<std::string> notes;
