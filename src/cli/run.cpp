@@ -6,6 +6,7 @@
 #include <new>
 
 #include "clickwise/core/errors.hpp"
+#include "clickwise/core/utf8.hpp"
 #include "command.hpp"
 
 namespace clickwise::cli {
@@ -15,8 +16,12 @@ namespace {
 constexpr int job_not_done = 1;
 constexpr int input_not_read = 2;
 
+// One line, whatever bytes of a broken log are quoted in it.
 int complain(int status, const std::string& words) {
-  fmt::print(stderr, "clickwise: {}\n", words);
+  std::string line = core::as_utf8(words);
+  for (char& letter : line)
+    if (static_cast<unsigned char>(letter) < 0x20 || letter == 0x7F) letter = ' ';
+  fmt::print(stderr, "clickwise: {}\n", line);
   return status;
 }
 
@@ -28,10 +33,7 @@ std::string help_of(const CLI::App& app) {
 
 int usage_error(const CLI::App& app, const CLI::ParseError& error) {
   if (error.get_exit_code() == 0) return app.exit(error);  // --help, --version
-  std::string words = error.what();
-  for (char& letter : words)
-    if (letter == '\n') letter = ' ';
-  return complain(input_not_read, fmt::format("command line: {}; {}", words, help_of(app)));
+  return complain(input_not_read, fmt::format("command line: {}; {}", error.what(), help_of(app)));
 }
 
 // A first word that is no command, in place of the parser's "a subcommand is required".

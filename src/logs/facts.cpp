@@ -6,6 +6,7 @@
 
 #include "clickwise/core/errors.hpp"
 #include "clickwise/core/parallel.hpp"
+#include "clickwise/core/utf8.hpp"
 #include "clickwise/io/timestamp.hpp"
 #include "clickwise/logs/clock.hpp"
 #include "clock_steps.hpp"
@@ -78,7 +79,7 @@ std::vector<Advance> describe_columns(LogFacts& facts, const TextRows& rows,
       column = describe(read.columns[k], wanted[k].kind, advances[begin + k]);
       column.name = rows.format().names[begin + k];
       column.number = static_cast<int>(begin + k + 1);
-      column.example = rows.first_cell(begin + k);
+      column.example = core::as_utf8(rows.first_cell(begin + k));
     });
   }
   return advances;
@@ -144,7 +145,7 @@ std::string_view to_string(ColumnKind kind) {
 LogFacts inspect_text_log(const std::string& path, const bike::LogFormat* format) {
   const TextRows rows(path);
   LogFacts facts;
-  facts.name = std::filesystem::path(path).filename().string();
+  facts.name = core::as_utf8(std::filesystem::path(path).filename().string());
   facts.notes = rows.notes();
   const std::vector<Advance> advances = describe_columns(facts, rows, rows.text_bytes());
   facts.format = rows.format();

@@ -6,6 +6,7 @@
 #include <map>
 
 #include "clickwise/core/errors.hpp"
+#include "clickwise/core/utf8.hpp"
 #include "clickwise/io/number.hpp"
 #include "sample_rows.hpp"
 #include "text_encoding.hpp"
@@ -252,6 +253,7 @@ TextFormat sniff_text_log(std::string_view text, const std::string& path) {
   find_header(format, trial, at);
   if (!format.has_header) find_comment_header(format, trial, at);
   format.names.resize(trial.columns);
+  for (std::string& name : format.names) name = core::as_utf8(name);
   for (std::size_t i = 0; i < at; ++i)
     ++(trial.rows[i].comment ? format.comment_lines : format.preamble_lines);
   if (format.has_header && !format.header_in_comment) --format.preamble_lines;

@@ -6,6 +6,7 @@
 #include <limits>
 
 #include "clickwise/core/errors.hpp"
+#include "clickwise/core/utf8.hpp"
 #include "clickwise/io/mapped_file.hpp"
 #include "clickwise/io/timestamp.hpp"
 #include "clickwise/logs/clock.hpp"
@@ -62,7 +63,7 @@ run::Recording read_text_log(const std::string& path, const bike::LogFormat& for
   io::Columns read = rows.read(request.wanted, !format.time, options.chunk_bytes);
   rows.refuse_mostly_malformed(read);
   run::Recording recording;
-  recording.name = std::filesystem::path(path).filename().string();
+  recording.name = core::as_utf8(std::filesystem::path(path).filename().string());
   recording.notes = rows.notes();
 
   Clock clock;

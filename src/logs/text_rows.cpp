@@ -6,6 +6,7 @@
 
 #include "clickwise/core/errors.hpp"
 #include "clickwise/core/parallel.hpp"
+#include "clickwise/core/utf8.hpp"
 #include "clickwise/io/number.hpp"
 #include "clickwise/io/timestamp.hpp"
 #include "sample_rows.hpp"
@@ -35,7 +36,8 @@ std::vector<std::string> TextRows::notes() const {
     notes.push_back(std::to_string(format_.preamble_lines) +
                     " lines in front of the data are neither header nor comment; they are skipped");
   if (!format_.units_row.empty())
-    notes.push_back("the line \"" + format_.units_row + "\" is taken for the columns' units");
+    notes.push_back("the line \"" + core::as_utf8(format_.units_row) +
+                    "\" is taken for the columns' units");
   if (format_.header_in_comment)
     notes.push_back("the names of the columns are taken from the last comment line");
   return notes;

@@ -17,7 +17,8 @@ struct TextFormat {
   bool header_in_comment = false;  // the last '#' line in front of the data holds the names
   bool byte_order_mark = false;
   bool crlf = false;
-  std::vector<std::string> names;  // one per column, trimmed; all empty without a header
+  std::vector<std::string> names;  // one per column, trimmed, as UTF-8 (core/utf8.hpp);
+                                   // all empty without a header
   long long data_line = 1;         // where the first row stands, counted from 1
   std::string units_row;           // a line of units between header and data, as written
   int comment_lines = 0;           // in front of the data
