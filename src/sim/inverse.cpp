@@ -146,10 +146,67 @@ void free_landings(Steps& steps, double least_tyre_n) {
   }
 }
 
-// At the stops the tyre's force is a guess, none at full extension and straight between before and
-// after at full stroke, and the wheel force is what then moves the two masses as recorded.
+// Tyre deflection that lags its force by the tyre's damping: the forward scheme turned round.
+double deflect(const bike::Tyre& tyre, double h, double force_n, double before_m) {
+  const double c_h = tyre.damping_n_s_m / h;
+  return (force_n + c_h * before_m) / (tyre.stiffness_n_m + c_h);
+}
+
+// On metal at full stroke the two masses move as one on the tyre, apart from what little is
+// recorded of their relative motion: D̈ = ÿ + g - F_t / M - z̈ m_s / M with M = m_s + m_u.
+class OnMetal {
+public:
+  OnMetal(const VehicleEnd& end, const Steps& steps, double h) : end_(end), steps_(steps), h_(h) {}
+
+  // Tyre force over [from, to) for a ground of constant acceleration, and the deflection it ends
+  // in.
+  double run(std::size_t from, std::size_t to, double deflection, double rate, double ground_m_s2,
+             std::vector<double>& tyre_n) const {
+    const double whole = end_.sprung_mass_kg + end_.unsprung_mass_kg;
+    for (std::size_t n = from; n < to; ++n) {
+      const double force = end_.tyre.stiffness_n_m * deflection + end_.tyre.damping_n_s_m * rate;
+      tyre_n[n] = force;
+      rate += h_ * (ground_m_s2 + gravity -
+                    (force + steps_.relative_m_s2[n] * end_.sprung_mass_kg) / whole);
+      deflection += h_ * rate;
+    }
+    return deflection;
+  }
+
+private:
+  const VehicleEnd& end_;
+  const Steps& steps_;
+  double h_;
+};
+
+// The ground's acceleration while on metal is the constant that meets the tyre's force known
+// behind it (the equation is linear in it). What the stops carry need not be known.
+void ride_on_metal(const VehicleEnd& end, Steps& steps, double h) {
+  const OnMetal metal(end, steps, h);
+  double deflection = 0.0, before = 0.0;
+  const std::size_t count = steps.tyre_n.size();
+  for (std::size_t n = 0; n < count; ++n) {
+    if (steps.at_bottom[n] != 0) {
+      std::size_t to = n;
+      while (to < count && steps.at_bottom[to] != 0) ++to;
+      const double rate = (deflection - before) / h;
+      const double start = deflection + h * rate;
+      const double level = metal.run(n, to, start, rate, 0.0, steps.tyre_n);
+      if (to < count) {
+        const double risen = metal.run(n, to, start, rate, 1.0, steps.tyre_n) - level;
+        const double known = std::max(0.0, steps.tyre_n[to]) / end.tyre.stiffness_n_m;
+        metal.run(n, to, start, rate, (known - level) / risen, steps.tyre_n);
+      }
+      n = to - 1;
+    }
+    before = deflection;
+    deflection = deflect(end.tyre, h, std::max(0.0, steps.tyre_n[n]), deflection);
+  }
+}
+
+// In the air at full extension nothing presses; at either stop the wheel force is what moves the
+// two masses against each other as recorded.
 void guess_at_stops(const VehicleEnd& end, Steps& steps) {
-  bridge(steps.tyre_n, steps.at_bottom);
   const double mobility = 1.0 / end.sprung_mass_kg + 1.0 / end.unsprung_mass_kg;
   for (std::size_t n = 0; n < steps.tyre_n.size(); ++n) {
     if (steps.at_top[n] == 0 && steps.at_bottom[n] == 0) continue;
@@ -189,13 +246,11 @@ void hang_ground(Forcing& forcing, const std::vector<double>& z, std::size_t fro
 
 void lay_ground_under(const VehicleEnd& end, const Steps& steps, const std::vector<double>& z,
                       const InverseOptions& options, Forcing& forcing) {
-  const double k_t = end.tyre.stiffness_n_m;
-  const double c_h = end.tyre.damping_n_s_m / forcing.step_s;
-  double deflection = std::max(0.0, steps.tyre_n.front()) / k_t;
+  double deflection = std::max(0.0, steps.tyre_n.front()) / end.tyre.stiffness_n_m;
   for (std::size_t n = 0; n < steps.tyre_n.size(); ++n) {
     const bool airborne = steps.tyre_n[n] < options.least_tyre_n;
     forcing.airborne.push_back(airborne);
-    deflection = airborne ? 0.0 : (steps.tyre_n[n] + c_h * deflection) / (k_t + c_h);
+    deflection = airborne ? 0.0 : deflect(end.tyre, forcing.step_s, steps.tyre_n[n], deflection);
     forcing.ground_m.push_back(static_cast<float>(z[n] + deflection));
     forcing.load_m_s2.push_back(static_cast<float>(steps.wheel_n[n] / end.sprung_mass_kg));
   }
@@ -222,6 +277,7 @@ Forcing recover_forcing(const VehicleEnd& end, const Stretch& stretch,
   forcing.wheel_m_s = (z[1] - z[0]) / forcing.step_s;
   Steps steps = forces(end, z, forcing.wheel_m_s, forcing.step_s, options);
   free_landings(steps, options.least_tyre_n);
+  ride_on_metal(end, steps, forcing.step_s);
   guess_at_stops(end, steps);
   lay_ground_under(end, steps, z, options, forcing);
   return forcing;

@@ -4,8 +4,10 @@
 #include <cmath>
 
 // One binary for every x86-64: the loader takes the widest version that the machine has.
-#if defined(__x86_64__) && defined(__GNUC__) && !defined(__clang__) && !defined(__SANITIZE_ADDRESS__)
-#define CLICKWISE_LANES __attribute__((target_clones("arch=x86-64-v4", "arch=x86-64-v3", "default")))
+#if defined(__x86_64__) && defined(__GNUC__) && !defined(__clang__) && \
+    !defined(__SANITIZE_ADDRESS__)
+#define CLICKWISE_LANES \
+  __attribute__((target_clones("arch=x86-64-v4", "arch=x86-64-v3", "default")))
 #else
 #define CLICKWISE_LANES
 #endif
@@ -15,9 +17,15 @@ namespace clickwise::sim {
 namespace {
 
 // Both branches of a choice are computed and one is kept: no jumps, so that lanes stay together.
-[[gnu::always_inline]] inline float pick(bool first, float a, float b) { return first ? a : b; }
-[[gnu::always_inline]] inline float at_most(float a, float b) { return a < b ? a : b; }
-[[gnu::always_inline]] inline float at_least_0(float a) { return a > 0.0F ? a : 0.0F; }
+[[gnu::always_inline]] inline float pick(bool first, float a, float b) {
+  return first ? a : b;
+}
+[[gnu::always_inline]] inline float at_most(float a, float b) {
+  return a < b ? a : b;
+}
+[[gnu::always_inline]] inline float at_least_0(float a) {
+  return a > 0.0F ? a : 0.0F;
+}
 
 // a for weight 1, b for weight 0: where a choice between two loads would become a jump.
 [[gnu::always_inline]] inline float mix(float weight, float a, float b) {
@@ -69,8 +77,7 @@ struct Instant {
   const float above = at_least_0(-z);
   const float side = pick(above > 0.0F, -1.0F, 1.0F);
   const float depth = (past + above) * inverse_ratio;
-  const float stop =
-      side * g.stop_n_m * depth * at_least_0(1.0F + g.stop_loss_s_m * side * old_v);
+  const float stop = side * g.stop_n_m * depth * at_least_0(1.0F + g.stop_loss_s_m * side * old_v);
   const float held = spring + stop * inverse_ratio;
 
   const float deflection = now.ground_m - g.wheel_m.at[l];
@@ -162,9 +169,8 @@ void sum_up(const LaneChunk& chunk, std::size_t from, std::size_t to, const Lane
       s.max_m_s[1].at[l] = std::max(s.max_m_s[1].at[l], -v);
       s.max_travel_m.at[l] = std::max(s.max_travel_m.at[l], x);
       s.min_travel_m.at[l] = std::min(s.min_travel_m.at[l], x);
-      const float speed_cell =
-          at_most(speed * limits.speed_scale, limits.last_speed_cell) +
-          out * (limits.last_speed_cell + 1.0F);
+      const float speed_cell = at_most(speed * limits.speed_scale, limits.last_speed_cell) +
+                               out * (limits.last_speed_cell + 1.0F);
       const float travel_cell =
           at_most(at_least_0(x * limits.travel_scale + 8.0F), limits.last_travel_cell);
       s.speed_cell[i][l] = static_cast<std::uint16_t>(static_cast<std::int32_t>(speed_cell));

@@ -11,7 +11,9 @@ namespace {
 constexpr double least_rearm_m = 0.015;  // contract section 1
 constexpr double rearm_withins = 4.0;
 
-double rearm_distance_m(double within_m) { return std::max(rearm_withins * within_m, least_rearm_m); }
+double rearm_distance_m(double within_m) {
+  return std::max(rearm_withins * within_m, least_rearm_m);
+}
 
 }  // namespace
 
@@ -47,8 +49,7 @@ void LaneWatch::look(Line& line, double t_s, double x, double v,
 }
 
 StopEvents LaneWatch::see(const LaneChunk& chunk, std::size_t lane, std::size_t from,
-                          std::size_t to, std::size_t first_sample, double least_m,
-                          double most_m) {
+                          std::size_t to, std::size_t first_sample, double least_m, double most_m) {
   StopEvents found;
   const bool near_bottom = !bottom_.armed || most_m >= bottom_.level_m;
   const bool near_top = !top_.armed || -least_m >= top_.level_m;

@@ -17,7 +17,7 @@ struct StopEvents {
 // Contract section 1; the crossing lies straight between samples. Excursions go on from chunk to
 // chunk until `interrupt`.
 class LaneWatch {
- public:
+public:
   explicit LaneWatch(const TallyPlan& plan);
 
   StopEvents see(const LaneChunk& chunk, std::size_t lane, std::size_t from, std::size_t to,
@@ -26,7 +26,7 @@ class LaneWatch {
   // What follows does not continue what was seen.
   void interrupt() { continues_ = false; }
 
- private:
+private:
   struct Line {
     double sign, level_m, rearm_m, least_m_s;
     bool armed = true;

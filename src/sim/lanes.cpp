@@ -16,7 +16,9 @@ constexpr std::size_t cells_below_zero = 8;  // of the travel histogram; the ker
 
 static_assert(lane_width == kernel_width);
 
-float narrow(double value) { return static_cast<float>(value); }
+float narrow(double value) {
+  return static_cast<float>(value);
+}
 
 // Tables of up to a group of ends, one after the other.
 struct Tables {
@@ -96,7 +98,7 @@ LaneLimits limits_of(const TallyPlan& plan) {
 
 // The tallies of a group, filled chunk by chunk.
 class Counter {
- public:
+public:
   Counter(const TallyPlan& plan, std::size_t lanes, std::size_t blocks)
       : plan_(plan), limits_(limits_of(plan)), tallies_(lanes), watches_(lanes, LaneWatch(plan)) {
     for (Tally& tally : tallies_) {
@@ -115,8 +117,8 @@ class Counter {
     for (std::size_t l = 0; l < tallies_.size(); ++l) {
       add_sums(tallies_[l], block, l, static_cast<double>(to - from));
       add_cells(tallies_[l], l, from, to);
-      const StopEvents found = watches_[l].see(chunk, l, from, to, first,
-                                               sums_.min_travel_m.at[l], sums_.max_travel_m.at[l]);
+      const StopEvents found = watches_[l].see(chunk, l, from, to, first, sums_.min_travel_m.at[l],
+                                               sums_.max_travel_m.at[l]);
       append(tallies_[l], block, found);
     }
   }
@@ -127,7 +129,7 @@ class Counter {
 
   std::vector<Tally> tallies() && { return std::move(tallies_); }
 
- private:
+private:
   void add_sums(Tally& tally, std::size_t block, std::size_t l, double samples) {
     BlockTally& sum = tally.blocks[block];
     const double in = sums_.moving.at[l];
@@ -179,16 +181,21 @@ void start(LaneGroup& group, const Forcing& forcing) {
   }
 }
 
-void count_runs(Counter& counter, const LaneChunk& chunk, const LaneStretch& stretch,
-                std::size_t done, std::size_t samples, std::size_t block) {
+void count_runs(Counter& counter, const LaneChunk& chunk, const std::uint8_t* counted,
+                std::size_t samples, std::size_t first, std::size_t block) {
   for (std::size_t i = 0; i < samples;) {
-    const bool counts = stretch.counted[done + i + 1] != 0;
+    const bool counts = counted[i] != 0;
     std::size_t to = i;
-    while (to < samples && (stretch.counted[done + to + 1] != 0) == counts) ++to;
-    if (counts) counter.count(chunk, i, to, stretch.first_sample + done + 1, block);
+    while (to < samples && (counted[to] != 0) == counts) ++to;
+    if (counts) counter.count(chunk, i, to, first, block);
     if (!counts) counter.interrupt();
     i = to;
   }
+}
+
+std::size_t block_samples_of(const TallyPlan& plan) {
+  return std::max<std::size_t>(
+      1, static_cast<std::size_t>(std::lround(plan.block_s / plan.interval_s)));
 }
 
 void ride_stretch(LaneGroup& group, const LaneStretch& stretch, std::size_t block_samples,
@@ -209,7 +216,7 @@ void ride_stretch(LaneGroup& group, const LaneStretch& stretch, std::size_t bloc
         std::min({chunk_samples, total - done, (block + 1) * block_samples - at});
     advance(group, ground.data() + 1 + done * forcing.substeps,
             forcing.load_m_s2.data() + done * forcing.substeps, samples, forcing.substeps, chunk);
-    count_runs(counter, chunk, stretch, done, samples, block);
+    count_runs(counter, chunk, stretch.counted.data() + done + 1, samples, at, block);
     done += samples;
   }
   counter.interrupt();
@@ -219,8 +226,7 @@ void ride_stretch(LaneGroup& group, const LaneStretch& stretch, std::size_t bloc
 
 std::vector<Tally> ride_lanes(std::span<const VehicleEnd> ends,
                               std::span<const LaneStretch> stretches, const TallyPlan& plan) {
-  const auto block_samples =
-      std::max<std::size_t>(1, static_cast<std::size_t>(std::lround(plan.block_s / plan.interval_s)));
+  const std::size_t block_samples = block_samples_of(plan);
   std::size_t samples = 1;
   for (const LaneStretch& stretch : stretches)
     samples = std::max(samples, stretch.first_sample + stretch.counted.size());
@@ -238,6 +244,34 @@ std::vector<Tally> ride_lanes(std::span<const VehicleEnd> ends,
     std::move(tallies.begin(), tallies.end(), std::back_inserter(all));
   }
   return all;
+}
+
+Tally count_series(std::span<const SeriesStretch> stretches, const damper::Curve& curve,
+                   const TallyPlan& plan) {
+  const std::size_t block_samples = block_samples_of(plan);
+  std::size_t total = 1;
+  for (const SeriesStretch& stretch : stretches)
+    total = std::max(total, stretch.first_sample + stretch.counted.size());
+  Counter counter(plan, 1, total / block_samples + 1);
+  LaneChunk chunk{};
+  for (const SeriesStretch& stretch : stretches) {
+    for (std::size_t done = 0; done < stretch.counted.size();) {
+      const std::size_t at = stretch.first_sample + done;
+      const std::size_t block = at / block_samples;
+      const std::size_t samples = std::min(
+          {chunk_samples, stretch.counted.size() - done, (block + 1) * block_samples - at});
+      for (std::size_t i = 0; i < samples; ++i) {
+        const double v = stretch.velocity_m_s[done + i];
+        chunk.travel_m[i].at[0] = narrow(stretch.travel_m[done + i]);
+        chunk.velocity_m_s[i].at[0] = narrow(v);
+        chunk.power_w[i].at[0] = narrow(curve.force_n(v) * v);
+      }
+      count_runs(counter, chunk, stretch.counted.data() + done, samples, at, block);
+      done += samples;
+    }
+    counter.interrupt();
+  }
+  return std::move(std::move(counter).tallies()[0]);
 }
 
 }  // namespace clickwise::sim

@@ -37,7 +37,7 @@ struct Forcing {
 };
 
 struct InverseOptions {
-  double longest_step_s = 5e-4;
+  double longest_step_s = 1e-3;
   double least_tyre_n = 60.0;   // a recovered tyre force below it: the wheel is in the air
   double still_m_s = 0.01;      // below this shaft speed friction and platforms are not known
   double stop_margin_m = 4e-4;  // this close to the ends of the stroke the stops may carry

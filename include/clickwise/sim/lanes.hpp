@@ -17,11 +17,11 @@ namespace clickwise::sim {
 inline constexpr std::size_t directions = 2;
 
 struct TallyPlan {
-  double interval_s = 0.0;                              // of the samples
-  std::array<double, directions> split_m_s{0.7, 0.7};   // > 0; a speed at it is low
-  std::array<double, directions> tail_m_s{1.0, 1.0};    // > 0; time above is counted per block
-  double tail_travel_m = 0.1;                           // the same for travel
-  double stroke_m = 0.0;                                // > 0
+  double interval_s = 0.0;                             // of the samples
+  std::array<double, directions> split_m_s{0.7, 0.7};  // > 0; a speed at it is low
+  std::array<double, directions> tail_m_s{1.0, 1.0};   // > 0; time above is counted per block
+  double tail_travel_m = 0.1;                          // the same for travel
+  double stroke_m = 0.0;                               // > 0
   double bottom_out_within_m = 4e-3;
   double top_out_within_m = 3e-3;
   double top_out_least_m_s = 0.25;
@@ -70,6 +70,17 @@ struct LaneStretch {
   std::size_t first_sample = 0;
   std::vector<std::uint8_t> counted;
 };
+
+// Counts a recorded series in the same way: samples [first_sample, first_sample + counted.size())
+// of the ride, one tally over all stretches. Joules are of the curve.
+struct SeriesStretch {
+  std::span<const double> travel_m;
+  std::span<const double> velocity_m_s;
+  std::size_t first_sample = 0;
+  std::span<const std::uint8_t> counted;
+};
+Tally count_series(std::span<const SeriesStretch> stretches, const damper::Curve& curve,
+                   const TallyPlan& plan);
 
 // Rides each end over every stretch; tally i is of ends[i]. Single precision: travel differs from
 // ride_forward's by less than 0.02 mm rms. `ends` share stroke and linkage. Single-threaded; lanes
