@@ -1,9 +1,9 @@
 #include "clickwise/io/delimited.hpp"
 
 #include <algorithm>
-#include <cmath>
+#include <array>
+#include <cstdint>
 #include <cstring>
-#include <limits>
 #include <numeric>
 
 #include "clickwise/core/parallel.hpp"
@@ -39,9 +39,23 @@ std::vector<Chunk> cut_at_lines(std::string_view text, std::size_t begin, std::s
   return chunks;
 }
 
+// In bytes side by side, which the compiler turns into vectors; std::count works in wide counters.
+std::size_t count_line_ends(std::string_view text) {
+  constexpr std::size_t lanes = 16;
+  constexpr std::size_t block = 255 * lanes;  // a byte's worth in each lane
+  std::size_t sum = 0;
+  for (; text.size() >= block; text.remove_prefix(block)) {
+    std::array<std::uint8_t, lanes> counts{};
+    for (std::size_t i = 0; i < block; i += lanes)
+      for (std::size_t k = 0; k < lanes; ++k)
+        counts[k] = static_cast<std::uint8_t>(counts[k] + (text[i + k] == '\n'));
+    for (const std::uint8_t count : counts) sum += count;
+  }
+  return sum + static_cast<std::size_t>(std::count(text.begin(), text.end(), '\n'));
+}
+
 std::size_t count_lines(std::string_view text) {
-  const auto line_ends = static_cast<std::size_t>(std::count(text.begin(), text.end(), '\n'));
-  return line_ends + (!text.empty() && text.back() != '\n' ? 1 : 0);
+  return count_line_ends(text) + (!text.empty() && text.back() != '\n' ? 1 : 0);
 }
 
 // Gives each chunk room for as many rows as it has lines; returns the room in all.

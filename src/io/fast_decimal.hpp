@@ -68,11 +68,14 @@ inline bool fast_decimal(const char* first, const char* last, char point, double
     if (!all_digits(text)) return false;
     mantissa = eight_digits(text);
   } else {
-    Bytes16 text = 0;
-    std::memcpy(&text, first, 16);
-    const std::uint64_t low = static_cast<std::uint64_t>(text);
+    // Two loads of 8: one of 16 goes through a vector register and stalls on its way out.
+    std::uint64_t low = 0;
+    std::uint64_t high = 0;
+    std::memcpy(&low, first, 8);
+    std::memcpy(&high, first + 8, 8);
+    Bytes16 text = (Bytes16{high} << 64U) | low;
     unsigned mark = find_byte(low, point);
-    if (mark == 8) mark += find_byte(static_cast<std::uint64_t>(text >> 64U), point);
+    if (mark == 8) mark += find_byte(high, point);
     if (mark < digits) {
       const Bytes16 whole = (Bytes16{1} << (8U * mark)) - 1U;
       text = (text & whole) | ((text >> 8U) & ~whole);
