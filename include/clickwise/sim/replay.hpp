@@ -58,6 +58,7 @@ struct BandFigures {
 struct EndFigures {
   std::array<BandFigures, directions> bands;
   double seconds = 0.0;
+  double still_s = 0.0;        // at shaft speeds below 20 mm/s
   double travel_mean_m = 0.0;  // NaN without time
   double travel_p50_m = 0.0;
   double travel_p95_m = 0.0;
@@ -82,6 +83,7 @@ struct Change {
 struct Prediction {
   EndFigures figures;  // modelled, with the bike as it is written
   std::array<Change, metrics> changes{};
+  std::vector<EndFigures> by_draw;  // the figures of every bike of the ensemble
 
   const Change& change(Metric metric) const { return changes[static_cast<std::size_t>(metric)]; }
 };
