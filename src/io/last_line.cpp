@@ -77,8 +77,8 @@ LastLine judge_last_line(std::string_view text, const TextLayout& layout) {
   if (text.size() <= layout.data_begin || text.back() == '\n') return last;
   const std::size_t mark = text.rfind('\n');
   last.begin = std::max(layout.data_begin, mark == std::string_view::npos ? 0 : mark + 1);
-  const std::string_view line = trimmed(text.substr(last.begin));
-  if (line.empty() || line.front() == '#') return last;
+  const std::size_t first = text.find_first_not_of(" \t\r", last.begin);
+  if (first == std::string_view::npos || text[first] == '#') return last;
   if (text.size() - last.begin > longest_line_compared) {
     last.cut = true;
     return last;
