@@ -1,7 +1,7 @@
 """Every console example of the README, the manual and the demo runs does what the page shows.
 
-In a ```console block, a line `$ command` is run and the lines below it are what it prints, errors
-included. A line `...` stands for any lines, `...` within a line for anything in that line. A
+In a ```console block, a line `$ command`, carried on by lines `> more`, is run, and the lines below
+it are what it prints, errors included. A line `...` stands for any lines, `...` within a line for anything in that line. A
 command whose lines show `clickwise: ` at a line's start must fail, any other must succeed. The
 blocks of one page run in order, in a folder that holds the demo runs.
 """
@@ -43,6 +43,8 @@ def examples_of(page):
         for number, line in enumerate(block[1].splitlines(), first):
             if line.startswith("$ "):
                 examples.append(Example(page, number, line[2:]))
+            elif line.startswith("> "):
+                examples[-1].command += "\n" + line[2:]
             else:
                 examples[-1].lines.append(line)
     return examples
