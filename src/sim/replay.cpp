@@ -167,10 +167,12 @@ ReplayResult replay(const ReplayInput& input, std::span<const VehicleEnd> candid
   });
   compare_with_recorded(input, stretches[0], result);
   auto figures = Ensemble(input, candidates, draws).ride(stretches, plan);
-  result.modelled = std::move(figures[0][0].whole);
+  result.modelled = figures[0][0].whole;
+  for (auto& draw : figures) result.modelled_by_draw.push_back(std::move(draw[0].whole));
   for (std::size_t c = 0; c < candidates.size(); ++c) {
     Prediction prediction;
-    prediction.figures = std::move(figures[0][c + 1].whole);
+    prediction.figures = figures[0][c + 1].whole;
+    for (auto& draw : figures) prediction.by_draw.push_back(std::move(draw[c + 1].whole));
     for (std::size_t m = 0; m < metrics; ++m)
       prediction.changes[m] = change_of(static_cast<Metric>(m), figures, c + 1, result);
     result.predictions.push_back(std::move(prediction));

@@ -46,6 +46,9 @@ EndFigures end_figures(Tally tally, const TallyPlan& plan) {
   const BlockTally sum = tally.total();
   EndFigures figures;
   figures.seconds = sum.samples * plan.interval_s;
+  constexpr auto still_cells = static_cast<std::size_t>(0.02 / Tally::speed_cell_m_s);
+  for (const auto& cells : tally.speed)
+    for (std::size_t i = 0; i < still_cells; ++i) figures.still_s += cells[i] * plan.interval_s;
   for (std::size_t d = 0; d < directions; ++d)
     figures.bands[d] = {.low_s = (sum.moving[d] - sum.high[d]) * plan.interval_s,
                         .high_s = sum.high[d] * plan.interval_s,
@@ -122,7 +125,6 @@ LaneFigures lane_figures(Tally tally, const TallyPlan& plan, bool keep) {
   lane.whole = end_figures(std::move(tally), plan);
   for (std::size_t m = 0; m < metrics; ++m)
     lane.values[m] = lane.whole.value(static_cast<Metric>(m));
-  if (!keep) lane.whole = {};
   return lane;
 }
 

@@ -10,8 +10,8 @@ namespace clickwise::sim {
 
 EndFigures end_figures(Tally tally, const TallyPlan& plan);
 
-// A lane's metrics; its whole figures, and what each block of the ride adds to each metric beyond
-// its share of the riding time, where they are kept.
+// A lane's metrics; its whole figures; and, where it is kept, what each block of the ride adds to
+// each metric beyond its share of the riding time.
 struct LaneFigures {
   std::array<double, metrics> values{};
   EndFigures whole;

@@ -91,6 +91,7 @@ struct Prediction {
 struct ReplayResult {
   EndFigures recorded;                  // of the same samples
   EndFigures modelled;                  // the settings of the ride, through the model
+  std::vector<EndFigures> modelled_by_draw;  // of every bike of the ensemble
   std::vector<Prediction> predictions;  // one a candidate
   double travel_rms_m = 0.0;            // modelled less recorded
   double velocity_rms_m_s = 0.0;
