@@ -10,16 +10,12 @@ namespace {
 
 constexpr double u32_range = 4294967296.0;
 
-void append_fixed(std::string& text, double value, int decimals) {
+void append_number(std::string& text, double value, int decimals) {
   char buffer[64];
   const auto end =
-      std::to_chars(buffer, buffer + sizeof buffer, value, std::chars_format::fixed, decimals);
-  text.append(buffer, end.ptr);
-}
-
-void append_whole(std::string& text, double value) {
-  char buffer[32];
-  const auto end = std::to_chars(buffer, buffer + sizeof buffer, std::llround(value));
+      decimals > 0
+          ? std::to_chars(buffer, buffer + sizeof buffer, value, std::chars_format::fixed, decimals)
+          : std::to_chars(buffer, buffer + sizeof buffer, std::llround(value));
   text.append(buffer, end.ptr);
 }
 
@@ -38,6 +34,21 @@ double travel_at(const EndTruth& end, double rate_hz, double t_s) {
 
 bool within(const PlannedFault& fault, double at_s) {
   return at_s >= fault.at_s && at_s < fault.at_s + fault.seconds;
+}
+
+constexpr int speed_decimals = 2;
+
+int decimals_of(ColumnKind kind, const LoggerPlan& plan) {
+  switch (kind) {
+    case ColumnKind::time:
+      return plan.time_decimals;
+    case ColumnKind::speed:
+      return speed_decimals;
+    case ColumnKind::extra:
+      return plan.extra_decimals;
+    default:
+      return 0;
+  }
 }
 
 }  // namespace
@@ -69,7 +80,7 @@ double LogCells::reading(const LogRow& row) {
 
 std::optional<double> LogCells::damaged(double reading, double at_s) {
   const double full = std::exp2(plan_.adc_bits) - 1.0;
-  const bool converted = kind_ != ColumnKind::speed;
+  const bool converted = decimals_of(kind_, plan_) == 0;
   double value = converted ? std::clamp(std::round(reading), 0.0, full) : reading;
   bool stuck = false;
   for (std::size_t i = 0; i < faults_.size(); ++i) {
@@ -93,18 +104,12 @@ void LogCells::append(std::string& text, const LogRow& row) {
   if (kind_ == ColumnKind::time) {
     double stamp = plan_.clock_start + row.clock_s / bike_.log.time->seconds_per_unit;
     if (plan_.wrap_u32) stamp = std::fmod(stamp, u32_range);
-    if (plan_.time_decimals == 0)
-      append_whole(text, stamp);
-    else
-      append_fixed(text, stamp, plan_.time_decimals);
+    append_number(text, stamp, decimals_of(kind_, plan_));
     return;
   }
   const auto value = damaged(reading(row), row.sampled_s);
   if (!value) return;
-  if (kind_ == ColumnKind::speed)
-    append_fixed(text, *value, 2);
-  else
-    append_whole(text, *value);
+  append_number(text, *value, decimals_of(kind_, plan_));
 }
 
 }  // namespace clickwise::sim

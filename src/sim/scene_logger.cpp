@@ -61,6 +61,7 @@ LoggerPlan read_logger(const io::TomlTable& logger) {
       logger.number_or("clock_start", 0.0, {.least = 0.0, .most = 1e15, .example = 4.29e9});
   plan.wrap_u32 = logger.boolean("wrap_u32").value_or(false);
   plan.extra_columns = read_names(logger, "extra_columns");
+  plan.extra_decimals = static_cast<int>(logger.integer("extra_decimals", 0, 9).value_or(0));
   for (const auto& fault : logger.tables("fault")) plan.faults.push_back(read_fault(fault));
   return plan;
 }

@@ -177,6 +177,16 @@ TEST_CASE("numbered columns stand at their numbers, without a header", "[sim]") 
   }
 }
 
+TEST_CASE("extra readings have the decimals that were asked for", "[sim]") {
+  Logged logged;
+  logged.scene.logger.extra_columns = {"supply"};
+  logged.scene.logger.extra_decimals = 3;
+  const auto rows = logged.rows();
+  const std::string& cell = rows[5].back();
+  CHECK(cell.size() - cell.find('.') == 4);
+  CHECK(rows[5][1].find('.') == std::string::npos);
+}
+
 TEST_CASE("a ride is written whole: log, bike, truth", "[sim]") {
   Logged logged;
   logged.scene.logger.extra_columns = {"gear", "temp"};

@@ -31,6 +31,7 @@ struct LoggerPlan {
   double clock_start = 0.0;   // first stamp, in that unit
   bool wrap_u32 = false;      // stamps are taken modulo 2^32 of that unit
   std::vector<std::string> extra_columns;  // further readings that nobody asked for: slow noise
+  int extra_decimals = 0;                  // of the further readings
   std::vector<PlannedFault> faults;
   std::uint64_t seed = 1;
 };

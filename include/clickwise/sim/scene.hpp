@@ -28,7 +28,8 @@ namespace clickwise::sim {
 //              kicker: height_m, length_m, drop_m = 0;   drop: height_m
 //              compression: depth_m, length_m
 //   [logger]   rate_hz = 1000, adc_bits = 12, noise_counts = 0, jitter = 0, time_decimals = 0,
-//              clock_start = 0, wrap_u32 = false, extra_columns = []
+//              clock_start = 0, wrap_u32 = false, extra_columns = [],
+//              extra_decimals = 0
 //   [[logger.fault]]     kind (those of log.faults), at_s; seconds (gap, stuck, saturated,
 //   missing);
 //              column (spike, stuck, saturated, missing); counts = 1500 (spike)
