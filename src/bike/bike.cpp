@@ -2,10 +2,30 @@
 
 #include <fmt/format.h>
 
+#include <utility>
+
 namespace clickwise::bike {
 
 std::string ColumnRef::label() const {
   return name.empty() ? fmt::format("column {}", number) : name;
+}
+
+const std::optional<Clicks>& DynoDamper::counted(Adjuster adjuster) const {
+  switch (adjuster) {
+    case Adjuster::low_speed_compression:
+      return bleed_compression;
+    case Adjuster::high_speed_compression:
+      return valve_compression;
+    case Adjuster::low_speed_rebound:
+      return bleed_rebound;
+    case Adjuster::high_speed_rebound:
+      break;
+  }
+  return valve_rebound;
+}
+
+std::optional<Clicks>& DynoDamper::counted(Adjuster adjuster) {
+  return const_cast<std::optional<Clicks>&>(std::as_const(*this).counted(adjuster));
 }
 
 std::optional<double> Bike::sprung_mass_kg(EndName which) const {

@@ -31,6 +31,14 @@ Aims read_aims(const io::TomlTable& root);
 Potentiometer read_sensor(const io::TomlTable& end);
 Spring read_spring(const io::TomlTable& spring, double stroke_m);
 Damper read_damper(const io::TomlTable& damper);
+
+// Reads the table that `damper.file` names, beside the bike file, and counts the adjusters that the
+// bike file does not count by the table's columns. The file must be CSV with the columns
+// velocity_mm_s and force_n and one for each adjuster that was turned; blank lines and lines that
+// begin with '#' are skipped. Rows at rest are left out, with a note. Throws core::InputError with
+// the table's line for the first thing wrong.
+void read_dyno_table(const std::string& path, DynoDamper& damper);
+
 End read_end(const io::TomlTable& end);
 
 }  // namespace clickwise::bike

@@ -1,3 +1,5 @@
+#include <filesystem>
+
 #include "bike_readers.hpp"
 #include "clickwise/core/units.hpp"
 
@@ -94,6 +96,13 @@ DynoDamper read_dyno(const io::TomlTable& damper) {
   DynoDamper result;
   result.file = damper.need_text("file", "fork_dyno.csv");
   read_all_counted(damper, result);
+  const auto folder = std::filesystem::path(damper.place().file).parent_path();
+  const std::string path = (folder / result.file).string();
+  std::error_code none;
+  if (!std::filesystem::exists(path, none))
+    damper.find("file")->refuse("there is no such file (looked for " + path + ")",
+                                "put the dyno table beside the bike file, or name its folder too");
+  read_dyno_table(path, result);
   return result;
 }
 

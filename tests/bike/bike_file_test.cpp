@@ -97,20 +97,13 @@ TEST_CASE("what a whole file leaves out is only what it leaves out", "[bike]") {
   CHECK_THAT(all, !Contains("front.") && !Contains("rider") && !Contains("log."));
 }
 
-TEST_CASE("an assumed and a dyno damper are read with what the rider counts", "[bike]") {
+TEST_CASE("an assumed damper is read with what the rider counts", "[bike]") {
   const auto b = larch();
   const auto& assumed = std::get<bike::AssumedDamper>(*b.rear->damper);
   CHECK(assumed.bleed_compression->clicks == 16);
   CHECK(assumed.valve_compression->setting == 6);
   CHECK(assumed.bleed_rebound->clicks == 18);
   CHECK(!assumed.valve_rebound);
-  const std::string dyno = minimal_bike_text +
-                           "[front.damper]\nkind = \"dyno\"\nfile = \"fork_dyno.csv\"\n"
-                           "compression = { bleed = { clicks = 16, setting = 8 } }\n";
-  const auto read = parse_bike(dyno, "larch.toml");
-  const auto& table = std::get<bike::DynoDamper>(*read.front->damper);
-  CHECK(table.file == "fork_dyno.csv");
-  CHECK(table.bleed_compression->setting == 8);
 }
 
 TEST_CASE("adjuster and end names go there and back", "[bike]") {

@@ -362,11 +362,11 @@ class BadInput(program.Scratch):
             self.write("bad.toml", self.bike.replace('column = "fork_adc"', f'column = "{column}"', 1))
             self.review_refused(2, f"both name {column}", bike="bad.toml")
 
-    def test_dyno_data_is_understood_and_refused(self):
+    def test_a_dyno_table_that_is_not_there_is_refused(self):
         before, after = self.bike.split("[front.damper]")
         rear = after[after.index("[rear]"):]
         self.write("bad.toml", before + '[front.damper]\nkind = "dyno"\nfile = "fork.csv"\n\n' + rear)
-        self.refused(1, "dyno", "damper", "bad.toml")
+        self.refused(2, "there is no such file", "damper", "bad.toml")
 
     # The command line.
 

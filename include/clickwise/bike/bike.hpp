@@ -102,11 +102,25 @@ struct HydraulicDamper {
   HydraulicSide rebound;
 };
 
-// Force-velocity points of a dynamometer, kept as a file until the damper module fits them.
+// One row of a dyno table: signed as everywhere, positive in compression.
+struct DynoPoint {
+  double velocity_m_s = 0.0;  // not 0
+  double force_n = 0.0;
+  std::array<double, 4> setting{};  // clicks out, in the order of all_adjusters; NaN: not given
+  int line = 0;                     // of the file
+};
+
+// Force-velocity points of a dynamometer, for the damper module to fit.
 struct DynoDamper {
   std::string file;  // as written; relative to the bike file's folder
-  // What the rider can count, per direction: clicks and setting (closed and open are 0).
+  // Clicks and present setting of each adjuster (closed and open are 0): as the bike file counts
+  // them, or else as the table's columns do.
   std::optional<Clicks> bleed_compression, valve_compression, bleed_rebound, valve_rebound;
+  std::vector<DynoPoint> points = {};
+  std::vector<std::string> notes = {};  // what was left out or taken for granted, sentences
+
+  const std::optional<Clicks>& counted(Adjuster adjuster) const;
+  std::optional<Clicks>& counted(Adjuster adjuster);
 };
 
 enum class CurveShape { digressive, linear, progressive };
@@ -160,7 +174,7 @@ struct Aims {
   double top_outs_per_minute = 6.0;      // at most
   double body_damping_low = 0.20;        // damping ratio of the body on this end, at least
   double harsh_force_ratio = 3.0;        // damper force at p95 over static load, at most
-  double held_share = 0.15;              // of riding time held still by a platform, at most
+  double held_share = 0.45;                   // of riding time standing still, at most
   double balance_share = 0.06;           // |front - rear| of mean travel over stroke, at most
 };
 
