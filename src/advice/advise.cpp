@@ -3,193 +3,64 @@
 #include <fmt/format.h>
 
 #include <algorithm>
-#include <boost/math/special_functions/gamma.hpp>
-#include <cmath>
 
 #include "clickwise/advice/find_symptoms.hpp"
-#include "clickwise/core/units.hpp"
-#include "rules.hpp"
+#include "clickwise/core/errors.hpp"
+#include "replay_choice.hpp"
+#include "rule_choice.hpp"
 
 namespace clickwise::advice {
 
 namespace {
 
-constexpr double window_before_event_s = 0.3;
-constexpr double least_share_per_click =
-    0.01;  // of the damper's work: below it a click is not felt
-constexpr double assumed_curve_confidence = 0.75;
-
-const EndRide& ride_of(const std::vector<EndRide>& rides, bike::EndName end) {
-  return *std::find_if(rides.begin(), rides.end(),
-                       [&](const EndRide& ride) { return ride.name == end; });
+std::vector<Symptom> of_end(const std::vector<Symptom>& symptoms, bike::EndName end) {
+  std::vector<Symptom> own;
+  std::copy_if(symptoms.begin(), symptoms.end(), std::back_inserter(own),
+               [&](const Symptom& symptom) { return symptom.end == end; });
+  return own;
 }
 
-std::vector<Window> before(const std::vector<run::EndStop>& stops) {
-  std::vector<Window> windows;
-  double last_s = -1e300;
-  for (const run::EndStop& stop : stops) {
-    windows.push_back({std::max(last_s, stop.t_s - window_before_event_s), stop.t_s});
-    last_s = stop.t_s;
-  }
-  return windows;
+bool any_crossed(const std::vector<Symptom>& measured) {
+  return std::any_of(measured.begin(), measured.end(),
+                     [](const Symptom& symptom) { return symptom.severity > 0.0; });
 }
 
-std::vector<run::EndStop> hard_bottom_outs(const EndRide& ride) {
-  std::vector<run::EndStop> hard;
-  for (const run::EndStop& stop : *ride.bottom_outs)
-    if (is_hard(ride, stop)) hard.push_back(stop);
-  return hard;
-}
-
-// Where in the ride the symptom is made.
-std::vector<Window> windows_of(const Symptom& symptom, const EndRide& ride) {
-  switch (symptom.kind) {
-    case SymptomKind::hard_bottoming:
-      return before(hard_bottom_outs(ride));
-    case SymptomKind::returns_too_fast:
-      return before(top_outs_on_the_ground(ride));
-    case SymptomKind::packs_down: {
-      std::vector<Window> windows;
-      for (const run::HitTrain& train : *ride.trains)
-        windows.push_back({train.begin_s, train.end_s});
-      return windows;
+// By replay where the bike file knows enough, by rule otherwise. A ride too broken to replay is
+// judged by rule as well.
+EndChoice choose(const EndRide& ride, const std::vector<Symptom>& measured,
+                 const std::vector<Symptom>& crossed, const AdviceOptions& options) {
+  if (!any_crossed(measured)) return {};
+  if (ride.vehicle && ride.damper) {
+    try {
+      return choose_by_replay(ride, measured, options);
+    } catch (const core::JobError&) {
+      return choose_by_rule(ride, crossed, options);
     }
-    default:
-      return {{ride.motion->time.at(0), ride.motion->time.at(ride.motion->time.samples)}};
   }
+  return choose_by_rule(ride, crossed, options);
 }
 
-// A move that this damper can make, with what a click of it is worth where the symptom is made.
-struct Candidate {
-  Move move;
-  damper::AdjusterRange range;
-  int room = 0;  // clicks left in the move's direction
-  double joules = 0.0;
-  double share = 0.0;
-};
+constexpr double shortest_judged_s = 20.0;  // less riding than this shows nothing
 
-Candidate candidate(const Move& move, const EndRide& ride, const damper::RideDensity& density) {
-  Candidate result{move, *ride.damper->adjuster(move.adjuster)};
-  result.room = move.firmer ? result.range.setting : result.range.clicks - result.range.setting;
-  const bool compression = bike::acts_in_compression(move.adjuster);
-  const damper::Reach reach =
-      damper::reach(*ride.damper, move.adjuster, density,
-                    compression ? ride.compression_split_m_s : ride.rebound_split_m_s);
-  result.joules = reach.low_j + reach.high_j;
-  const damper::Law law =
-      compression ? ride.damper->curve().compression : ride.damper->curve().rebound;
-  const core::Density& speeds = compression ? density.compression : density.rebound;
-  double work_j = 0.0;
-  for (std::size_t i = 0; i < speeds.at.size(); ++i)
-    work_j += law.force_n(speeds.at[i]) * speeds.at[i] * speeds.weight[i];
-  result.share = work_j > 0.0 ? result.joules / work_j : 0.0;
-  return result;
-}
-
-std::optional<Candidate> best_candidate(const Symptom& symptom, const EndRide& ride) {
-  if (!ride.damper) return std::nullopt;
-  const damper::RideDensity density = ride_density(ride, windows_of(symptom, ride));
-  std::optional<Candidate> best;
-  for (const Move& move : moves_for(symptom.kind)) {
-    if (!ride.damper->adjuster(move.adjuster)) continue;
-    const Candidate found = candidate(move, ride, density);
-    if (found.room < 1 || found.share < least_share_per_click) continue;
-    if (!best || found.share > best->share) best = found;
+double longest_counted_s(const std::vector<EndRide>& rides) {
+  double longest_s = 0.0;
+  for (const EndRide& ride : rides) {
+    const auto samples = std::count(ride.counted->begin(), ride.counted->end(), std::uint8_t{1});
+    longest_s = std::max(longest_s, static_cast<double>(samples) * ride.motion->time.interval_s());
   }
-  return best;
+  return longest_s;
 }
 
-// What a bottom-out needs taken from it before it is met: the sprung share's kinetic energy at the
-// crossing, at the shaft.
-double excess_j(const EndRide& ride, const run::EndStop& stop) {
-  const double ratio = ride.end->ratio(ride.end->stroke_m);
-  const double wheel_speed_m_s = stop.closing_speed_m_s * ratio;
-  return 0.5 * *ride.sprung_mass_kg * wheel_speed_m_s * wheel_speed_m_s;
-}
-
-// Bottom-outs that remain when the move is made by `clicks`: those whose excess is larger than what
-// the firmer damper takes on the same way down.
-int remaining_bottom_outs(const EndRide& ride, const Move& move, int to) {
-  const damper::Law now = ride.damper->curve().compression;
-  const damper::Law then = ride.damper->curve_with(move.adjuster, to).compression;
-  int remaining = 0;
-  for (const run::EndStop& stop : *ride.bottom_outs) {
-    const core::Density speeds = ride_density(ride, before({stop})).compression;
-    double taken_j = 0.0;
-    for (std::size_t i = 0; i < speeds.at.size(); ++i)
-      taken_j += (then.force_n(speeds.at[i]) - now.force_n(speeds.at[i])) * speeds.at[i] *
-                 speeds.weight[i];
-    if (taken_j < excess_j(ride, stop)) ++remaining;
-  }
-  return remaining;
-}
-
-Prediction predicted_bottom_outs(const EndRide& ride, int remaining) {
-  const double then = remaining;
-  return {"bottom_outs", static_cast<double>(ride.bottom_outs->size()), then,
-          then > 0.0 ? boost::math::gamma_p_inv(then, 0.05) : 0.0,
-          boost::math::gamma_p_inv(then + 1.0, 0.95)};
-}
-
-int target_setting(const Candidate& candidate, int clicks) {
-  return candidate.range.setting + (candidate.move.firmer ? -clicks : clicks);
-}
-
-// The fewest clicks, up to the most allowed, that bring the symptom to its aim.
-int clicks_needed(const Symptom& symptom, const EndRide& ride, const Candidate& candidate,
-                  int most) {
-  if (symptom.kind != SymptomKind::hard_bottoming || !ride.sprung_mass_kg)
-    return symptom.severity > 4.0 ? std::min(2, most) : 1;
-  const double minutes = symptom.value > 0.0
-                             ? static_cast<double>(hard_bottom_outs(ride).size()) / symptom.value
-                             : 1.0;
-  for (int clicks = 1; clicks < most; ++clicks) {
-    const int remaining =
-        remaining_bottom_outs(ride, candidate.move, target_setting(candidate, clicks));
-    if (remaining / minutes <= symptom.aim) return clicks;
-  }
-  return most;
-}
-
-std::string why(const Symptom& symptom, const EndRide& ride, const Candidate& candidate) {
-  std::string text =
-      fmt::format("{} {:.3g} {} (aim {:.3g}, 90 % interval {:.3g} to {:.3g})", words(symptom.kind),
-                  symptom.value, unit(symptom.kind), symptom.aim, symptom.low, symptom.high);
-  if (symptom.kind == SymptomKind::hard_bottoming) {
-    const auto hard = hard_bottom_outs(ride);
-    const auto [least, most] = std::minmax_element(
-        hard.begin(), hard.end(), [](const run::EndStop& a, const run::EndStop& b) {
-          return a.closing_speed_m_s < b.closing_speed_m_s;
-        });
-    text += fmt::format(", met at {:.0f} to {:.0f} mm/s", core::to_mm(least->closing_speed_m_s),
-                        core::to_mm(most->closing_speed_m_s));
-  }
-  return text + fmt::format(
-                    "; where that happens one click is worth {:.1f} J, {:.1f} % of the "
-                    "damper's work there",
-                    candidate.joules, 100.0 * candidate.share);
-}
-
-Step step_for(const Symptom& symptom, const EndRide& ride, const Candidate& candidate,
-              const AdviceOptions& options) {
-  const int most = std::min(options.most_clicks, candidate.room);
-  const int clicks = clicks_needed(symptom, ride, candidate, most);
-  Step step;
-  step.end = ride.name;
-  step.adjuster = candidate.move.adjuster;
-  step.from = candidate.range.setting;
-  step.to = target_setting(candidate, clicks);
-  step.symptom = symptom;
-  step.why = why(symptom, ride, candidate);
-  step.confidence = symptom.certainty() * (ride.damper->assumed() ? assumed_curve_confidence : 1.0);
-  if (symptom.kind == SymptomKind::hard_bottoming && ride.sprung_mass_kg)
-    step.predicted.push_back(
-        predicted_bottom_outs(ride, remaining_bottom_outs(ride, candidate.move, step.to)));
-  return step;
-}
-
-std::string leave_it_words(const Advice& advice, double sure_enough) {
+std::string leave_it_words(const Advice& advice, const std::vector<EndRide>& rides,
+                           double sure_enough) {
+  const double counted_s = longest_counted_s(rides);
+  if (counted_s < shortest_judged_s && advice.handovers.empty())
+    return fmt::format("{:.1f} s of riding are too few to judge; log a whole run", counted_s);
   if (advice.symptoms.empty()) return "every figure is at its aim";
+  const bool damper_unknown =
+      std::any_of(advice.handovers.begin(), advice.handovers.end(),
+                  [](const Handover& handover) { return handover.to == "bike file"; });
+  if (damper_unknown) return "the bike file does not describe the damper that would be turned";
   if (!advice.handovers.empty()) return "what is off its aim is not a job for an adjuster";
   return fmt::format(
       "nothing is off its aim by enough to be {:.0f} % sure of a step: ride and log "
@@ -202,22 +73,20 @@ std::string leave_it_words(const Advice& advice, double sure_enough) {
 Advice advise(const std::vector<EndRide>& rides, const bike::Aims& aims,
               const AdviceOptions& options) {
   Advice advice;
+  const std::vector<Symptom> measured = measure_symptoms(rides, aims, options.seed);
   advice.symptoms = find_symptoms(rides, aims, options.seed);
-  for (const Symptom& symptom : advice.symptoms) {
-    if (symptom.certainty() < options.least_confidence) continue;
-    const EndRide& ride = ride_of(rides, symptom.end);
-    const std::optional<Candidate> candidate = best_candidate(symptom, ride);
-    if (!candidate) {
-      const Receiver& receiver = receiver_of(symptom.kind);
-      advice.handovers.push_back({symptom, receiver.to, receiver.why});
-      continue;
-    }
-    const bool end_has_step = std::any_of(advice.steps.begin(), advice.steps.end(),
-                                          [&](const Step& step) { return step.end == ride.name; });
-    const Step step = step_for(symptom, ride, *candidate, options);
-    if (!end_has_step && step.confidence >= options.least_confidence) advice.steps.push_back(step);
+  for (const EndRide& ride : rides) {
+    EndChoice choice =
+        choose(ride, of_end(measured, ride.name), of_end(advice.symptoms, ride.name), options);
+    if (choice.step) advice.steps.push_back(std::move(*choice.step));
+    std::move(choice.handovers.begin(), choice.handovers.end(),
+              std::back_inserter(advice.handovers));
   }
-  if (advice.steps.empty()) advice.leave_it = leave_it_words(advice, options.least_confidence);
+  std::stable_sort(advice.steps.begin(), advice.steps.end(), [](const Step& a, const Step& b) {
+    return a.symptom.severity * a.confidence > b.symptom.severity * b.confidence;
+  });
+  if (advice.steps.empty())
+    advice.leave_it = leave_it_words(advice, rides, options.least_confidence);
   return advice;
 }
 

@@ -17,8 +17,7 @@ namespace {
 
 constexpr double least_riding_s = 10.0;
 constexpr double body_speed_m_s = 0.15;
-constexpr double still_m_s = 0.015;
-constexpr double other_end_moves_m_s = 0.2;
+constexpr double still_m_s = 0.02;
 
 // One end's ride with its blocks and the figures of each.
 struct Evidence {
@@ -58,10 +57,9 @@ double weighted_ratio(const std::vector<double>& over, const std::vector<double>
 // The figure against an upper bound (sign +1) or a lower one (-1).
 Symptom against_aim(SymptomKind kind, const EndRide& ride, const Sampled& figure, double aim,
                     double sign) {
-  Symptom symptom{kind, ride.name, figure.value, figure.low, figure.high, aim, 0.0};
-  const double beyond = sign * (figure.value - aim);
-  const double error = std::max(figure.error, 1e-3 * std::abs(aim) + 1e-9);
-  symptom.severity = std::max(0.0, beyond / error);
+  Symptom symptom{kind, ride.name, figure.value, figure.low, figure.high, aim, sign};
+  symptom.error = std::max(figure.error, 1e-3 * std::abs(aim) + 1e-9);
+  symptom.severity = std::max(0.0, sign * (figure.value - aim) / symptom.error);
   return symptom;
 }
 
@@ -73,6 +71,7 @@ Symptom rate_above_aim(SymptomKind kind, const Evidence& evidence, long count, d
   symptom.low = boost::math::gamma_p_inv(shape, 0.05) / minutes;
   symptom.high = boost::math::gamma_p_inv(shape, 0.95) / minutes;
   symptom.aim = aim;
+  symptom.error = std::sqrt(shape) / minutes;
   if (symptom.value <= aim) return symptom;
   const double within_aim = std::max(boost::math::gamma_p(shape, aim * minutes), 1e-12);
   symptom.severity = std::max(0.0, std::sqrt(2.0) * boost::math::erfc_inv(2.0 * within_aim));
@@ -146,75 +145,63 @@ Sampled compression_force_ratio(const Evidence& evidence) {
   return {value, value - 1.645 * error, value + 1.645 * error, error};
 }
 
-Sampled held_percent(const Evidence& evidence, const EndRide& other, unsigned seed) {
-  const auto moves = [&](std::size_t i) {
-    return (*other.counted)[i] && std::abs(other.motion->velocity_m_s[i]) > other_end_moves_m_s;
-  };
+Sampled held_percent(const Evidence& evidence, unsigned seed) {
   const std::vector<double> held = evidence.sums([&](std::size_t i) {
-    return moves(i) && std::abs(evidence.ride->motion->velocity_m_s[i]) < still_m_s ? 100.0 : 0.0;
+    return std::abs(evidence.ride->motion->velocity_m_s[i]) < still_m_s ? 100.0 : 0.0;
   });
-  const std::vector<double> moving =
-      evidence.sums([&](std::size_t i) { return moves(i) ? 1.0 : 0.0; });
+  const std::vector<double> riding = evidence.sums([](std::size_t) { return 1.0; });
   return bootstrap(held.size(), seed, [&](const std::vector<int>& times) {
-    return weighted_ratio(held, moving, times);
+    return weighted_ratio(held, riding, times);
   });
 }
 
-void add_if_crossed(std::vector<Symptom>& symptoms, const Symptom& symptom) {
-  if (symptom.severity > 0.0) symptoms.push_back(symptom);
-}
-
-void find_travel_symptoms(const Evidence& evidence, const bike::Aims& aims, unsigned seed,
-                          std::vector<Symptom>& symptoms) {
+void measure_travel(const Evidence& evidence, const bike::Aims& aims, unsigned seed,
+                    std::vector<Symptom>& symptoms) {
   const EndRide& ride = *evidence.ride;
   const Sampled mean = mean_travel_percent(evidence, seed);
-  add_if_crossed(symptoms, against_aim(SymptomKind::rides_deep, ride, mean,
-                                       100.0 * aims.travel_mean_share_high, 1.0));
-  add_if_crossed(symptoms, against_aim(SymptomKind::rides_high, ride, mean,
-                                       100.0 * aims.travel_mean_share_low, -1.0));
-  add_if_crossed(symptoms, against_aim(SymptomKind::unused_travel, ride,
-                                       largest_travel_percent(evidence, seed),
-                                       100.0 * aims.travel_used_share, -1.0));
+  symptoms.push_back(
+      against_aim(SymptomKind::rides_deep, ride, mean, 100.0 * aims.travel_mean_share_high, 1.0));
+  symptoms.push_back(
+      against_aim(SymptomKind::rides_high, ride, mean, 100.0 * aims.travel_mean_share_low, -1.0));
+  symptoms.push_back(against_aim(SymptomKind::unused_travel, ride,
+                                 largest_travel_percent(evidence, seed),
+                                 100.0 * aims.travel_used_share, -1.0));
 }
 
-void find_event_symptoms(const Evidence& evidence, const bike::Aims& aims, unsigned seed,
-                         std::vector<Symptom>& symptoms) {
+void measure_events(const Evidence& evidence, const bike::Aims& aims, unsigned seed,
+                    std::vector<Symptom>& symptoms) {
   const EndRide& ride = *evidence.ride;
   const auto hard = std::count_if(ride.bottom_outs->begin(), ride.bottom_outs->end(),
                                   [&](const run::EndStop& stop) { return is_hard(ride, stop); });
   const auto slow = static_cast<long>(ride.bottom_outs->size()) - hard;
-  add_if_crossed(symptoms, rate_above_aim(SymptomKind::hard_bottoming, evidence, hard,
-                                          aims.bottom_outs_per_minute));
-  add_if_crossed(symptoms, rate_above_aim(SymptomKind::slow_bottoming, evidence, slow,
-                                          aims.bottom_outs_per_minute));
-  add_if_crossed(symptoms, rate_above_aim(SymptomKind::returns_too_fast, evidence,
-                                          static_cast<long>(top_outs_on_the_ground(ride).size()),
-                                          aims.top_outs_per_minute));
+  symptoms.push_back(
+      rate_above_aim(SymptomKind::hard_bottoming, evidence, hard, aims.bottom_outs_per_minute));
+  symptoms.push_back(
+      rate_above_aim(SymptomKind::slow_bottoming, evidence, slow, aims.bottom_outs_per_minute));
+  symptoms.push_back(rate_above_aim(SymptomKind::returns_too_fast, evidence,
+                                    static_cast<long>(top_outs_on_the_ground(ride).size()),
+                                    aims.top_outs_per_minute));
   if (ride.trains->size() >= 3)
-    add_if_crossed(symptoms,
-                   against_aim(SymptomKind::packs_down, ride, climb_mm_per_hit(ride, seed),
-                               aims.packing_mm_per_hit, 1.0));
+    symptoms.push_back(against_aim(SymptomKind::packs_down, ride, climb_mm_per_hit(ride, seed),
+                                   aims.packing_mm_per_hit, 1.0));
 }
 
-void find_damper_symptoms(const Evidence& evidence, const EndRide* other, const bike::Aims& aims,
-                          unsigned seed, std::vector<Symptom>& symptoms) {
+void measure_damper(const Evidence& evidence, const bike::Aims& aims, unsigned seed,
+                    std::vector<Symptom>& symptoms) {
   const EndRide& ride = *evidence.ride;
   if (!ride.damper) return;
   if (ride.sprung_mass_kg)
-    add_if_crossed(symptoms,
-                   against_aim(SymptomKind::harsh, ride, compression_force_ratio(evidence),
-                               aims.harsh_force_ratio, 1.0));
-  if (other)
-    add_if_crossed(symptoms,
-                   against_aim(SymptomKind::held_by_platform, ride,
-                               held_percent(evidence, *other, seed), 100.0 * aims.held_share, 1.0));
-  if (const std::optional<double> damping = body_damping_ratio(ride)) {
+    symptoms.push_back(against_aim(SymptomKind::harsh, ride, compression_force_ratio(evidence),
+                                   aims.harsh_force_ratio, 1.0));
+  symptoms.push_back(against_aim(SymptomKind::held_by_platform, ride, held_percent(evidence, seed),
+                                 100.0 * aims.held_share, 1.0));
+  if (const std::optional<double> damping = body_damping_ratio(ride, ride.damper->curve())) {
     // Known only as well as the curve: 10 % for a measured one, 30 % for an assumed one.
     const double error = (ride.damper->assumed() ? 0.3 : 0.1) * *damping;
-    add_if_crossed(
-        symptoms, against_aim(SymptomKind::wallows, ride,
-                              {*damping, *damping - 1.645 * error, *damping + 1.645 * error, error},
-                              aims.body_damping_low, -1.0));
+    symptoms.push_back(
+        against_aim(SymptomKind::wallows, ride,
+                    {*damping, *damping - 1.645 * error, *damping + 1.645 * error, error},
+                    aims.body_damping_low, -1.0));
   }
 }
 
@@ -224,9 +211,8 @@ bool is_hard(const EndRide& ride, const run::EndStop& bottom_out) {
   return bottom_out.closing_speed_m_s > ride.compression_split_m_s;
 }
 
-std::optional<double> body_damping_ratio(const EndRide& ride) {
-  if (!ride.damper || !ride.end->spring || !ride.sprung_mass_kg) return std::nullopt;
-  const damper::Curve curve = ride.damper->curve();
+std::optional<double> body_damping_ratio(const EndRide& ride, const damper::Curve& curve) {
+  if (!ride.end->spring || !ride.sprung_mass_kg) return std::nullopt;
   const double damping_n_s_m =
       0.5 * (curve.compression.force_n(body_speed_m_s) + curve.rebound.force_n(body_speed_m_s)) /
       body_speed_m_s;
@@ -245,19 +231,23 @@ std::optional<double> body_damping_ratio(const EndRide& ride) {
   return damping_n_s_m / (ratio * ratio) / (2.0 * std::sqrt(rate_n_m * *ride.sprung_mass_kg));
 }
 
-std::vector<Symptom> find_symptoms(const std::vector<EndRide>& rides, const bike::Aims& aims,
-                                   unsigned seed) {
+std::vector<Symptom> measure_symptoms(const std::vector<EndRide>& rides, const bike::Aims& aims,
+                                      unsigned seed) {
   std::vector<Symptom> symptoms;
   for (const EndRide& ride : rides) {
     const Evidence evidence(ride);
     if (evidence.riding_s < least_riding_s) continue;
-    const EndRide* other = nullptr;
-    for (const EndRide& candidate : rides)
-      if (candidate.name != ride.name) other = &candidate;
-    find_travel_symptoms(evidence, aims, seed, symptoms);
-    find_event_symptoms(evidence, aims, seed, symptoms);
-    find_damper_symptoms(evidence, other, aims, seed, symptoms);
+    measure_travel(evidence, aims, seed, symptoms);
+    measure_events(evidence, aims, seed, symptoms);
+    measure_damper(evidence, aims, seed, symptoms);
   }
+  return symptoms;
+}
+
+std::vector<Symptom> find_symptoms(const std::vector<EndRide>& rides, const bike::Aims& aims,
+                                   unsigned seed) {
+  std::vector<Symptom> symptoms = measure_symptoms(rides, aims, seed);
+  std::erase_if(symptoms, [](const Symptom& symptom) { return symptom.severity <= 0.0; });
   std::stable_sort(symptoms.begin(), symptoms.end(),
                    [](const Symptom& a, const Symptom& b) { return a.severity > b.severity; });
   return symptoms;

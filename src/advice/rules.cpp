@@ -75,4 +75,10 @@ const Receiver& receiver_of(SymptomKind kind) {
   return receivers.at(kind);
 }
 
+const Receiver& receiver_without_damper(SymptomKind kind) {
+  static const Receiver bike_file{
+      "bike file", "it does not describe the damper: with its clicks a step can be named"};
+  return moves_for(kind).empty() ? receiver_of(kind) : bike_file;
+}
+
 }  // namespace clickwise::advice

@@ -25,4 +25,7 @@ struct Receiver {
 // Who a symptom is handed to when no adjuster reaches it.
 const Receiver& receiver_of(SymptomKind kind);
 
+// The same while the bike file does not know the damper, so that no click can be named.
+const Receiver& receiver_without_damper(SymptomKind kind);
+
 }  // namespace clickwise::advice

@@ -60,6 +60,14 @@ std::optional<damper::Damper> damper_of(const bike::Bike& bike, bike::EndName na
   return damper::Damper::from(*bike.end(name), bike.sprung_mass_kg(name), {bike.file});
 }
 
+std::optional<sim::VehicleEnd> vehicle_of(const bike::Bike& bike, bike::EndName name) {
+  try {
+    return sim::VehicleEnd::from(bike, name);
+  } catch (const core::JobError&) {
+    return std::nullopt;
+  }
+}
+
 EndReview review_end(const bike::Bike& bike, const RideEnd& ride, const bike::Split& asked,
                      const std::optional<damper::Damper>& damper) {
   const bike::End& end = *bike.end(ride.name);

@@ -12,6 +12,9 @@ namespace clickwise::workflow {
 // cannot be laid out.
 std::optional<damper::Damper> damper_of(const bike::Bike& bike, bike::EndName name);
 
+// The end as the replay needs it; empty when the bike file knows too little.
+std::optional<sim::VehicleEnd> vehicle_of(const bike::Bike& bike, bike::EndName name);
+
 EndReview review_end(const bike::Bike& bike, const RideEnd& ride, const bike::Split& asked,
                      const std::optional<damper::Damper>& damper);
 

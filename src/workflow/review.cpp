@@ -52,12 +52,15 @@ Review review(const ReviewOptions& options) {
         review_end(ride.bike, ride.ends[i], options.splits.end(ride.ends[i].name), dampers[i]);
   });
   result.airtimes = airtimes(ride);
-  if (ride.ends.size() == 2) result.front_rear = front_beside_rear(ride, result.ends);
+  if (ride.ends.size() == 2 && ride.ends[0].riding_s > 0.0 && ride.ends[1].riding_s > 0.0)
+    result.front_rear = front_beside_rear(ride, result.ends);
 
   std::vector<advice::EndRide> views;
   for (std::size_t i = 0; i < ride.ends.size(); ++i) {
     views.push_back(advice_view(ride.bike, ride.ends[i], result.ends[i], dampers[i]));
     views.back().airtimes = &result.airtimes;
+    views.back().bike = &ride.bike;
+    views.back().vehicle = vehicle_of(ride.bike, ride.ends[i].name);
   }
   result.advice = advice::advise(views, ride.bike.aims);
   result.missing = bike::what_is_missing(ride.bike);

@@ -11,6 +11,7 @@
 #include "clickwise/damper/reach.hpp"
 #include "clickwise/run/event.hpp"
 #include "clickwise/run/motion.hpp"
+#include "clickwise/sim/vehicle.hpp"
 
 namespace clickwise::advice {
 
@@ -26,6 +27,8 @@ struct EndRide {
   const std::vector<run::HitTrain>* trains = nullptr;
   const std::vector<run::Airtime>* airtimes = nullptr;  // null when not looked for
   const damper::Damper* damper = nullptr;               // null when the bike file has none
+  const bike::Bike* bike = nullptr;
+  std::optional<sim::VehicleEnd> vehicle;  // empty when the bike file knows too little of it
   std::optional<double> sprung_mass_kg;
   double compression_split_m_s = 0.0;
   double rebound_split_m_s = 0.0;

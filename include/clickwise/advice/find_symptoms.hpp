@@ -9,10 +9,14 @@
 
 namespace clickwise::advice {
 
-// All symptoms of all ends that cross their aim, most severe first. Sampling uncertainty: shares
-// and means by bootstrap over blocks of 5 s of riding (seeded), rates of events by the gamma
-// posterior of a Poisson rate with Jeffreys' prior. An end with under 10 s of counted riding time
-// shows none.
+// Every figure that has an aim, of every end, whether the aim is crossed or not. Sampling
+// uncertainty: shares and means by bootstrap over blocks of 5 s of riding (seeded), rates of events
+// by the gamma posterior of a Poisson rate with Jeffreys' prior. An end with under 10 s of counted
+// riding time has none.
+std::vector<Symptom> measure_symptoms(const std::vector<EndRide>& rides, const bike::Aims& aims,
+                                      unsigned seed);
+
+// Those of them that cross their aim, most severe first.
 std::vector<Symptom> find_symptoms(const std::vector<EndRide>& rides, const bike::Aims& aims,
                                    unsigned seed);
 
@@ -22,6 +26,6 @@ bool is_hard(const EndRide& ride, const run::EndStop& bottom_out);
 // Damping ratio of the body on this end: the energy-equivalent linear damping of compression and
 // rebound at a shaft speed of 0.15 m/s, over 2 sqrt(k m) at the mean riding travel, both at the
 // wheel. Empty when damper, spring or masses are not known.
-std::optional<double> body_damping_ratio(const EndRide& ride);
+std::optional<double> body_damping_ratio(const EndRide& ride, const damper::Curve& curve);
 
 }  // namespace clickwise::advice

@@ -18,7 +18,7 @@ enum class SymptomKind {
   packs_down,        // climb of the start travel from hit to hit of a train, mm per hit
   returns_too_fast,  // top-outs per minute of riding
   harsh,             // 95th percentile of the damper's compression force over the static load
-  held_by_platform,  // share of riding time an end stands still while the other one moves
+  held_by_platform,  // share of riding time at shaft speeds below 20 mm/s
   wallows,           // damping ratio of the body on this end, too small
 };
 
@@ -36,7 +36,9 @@ struct Symptom {
   double value = 0.0;  // in the unit of unit(kind); shares as 0 to 100 for "%"
   double low = 0.0;    // 90 % interval of the value
   double high = 0.0;
-  double aim = 0.0;  // the bound that is crossed, same unit
+  double aim = 0.0;    // the bound that should hold, same unit
+  double sign = 1.0;   // +1: the aim is an upper bound; -1: a lower one
+  double error = 1.0;  // standard error of the value
   double severity = 0.0;
 
   // Share of the sampling distribution that lies beyond the aim, 0.5 to 1 when the aim is crossed.
