@@ -46,7 +46,7 @@ std::size_t check_encoding(std::string_view text, const std::string& path) {
     throw core::InputError({path, 1}, "the text is written in UTF-16", "save the log as UTF-8");
   if (counts.controls * 50 > head.size())
     throw core::InputError({path, 1}, "this is no text but binary data",
-                           "name a text log, or describe packed frames in [log]");
+                           "name a text log; this version reads no other kind");
   const std::string_view first = text.substr(0, longest_first_line);
   if (first.find('\n') == std::string_view::npos) {
     const auto carriage = first.find('\r');

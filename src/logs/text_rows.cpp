@@ -1,6 +1,7 @@
 #include "text_rows.hpp"
 
 #include <algorithm>
+#include <array>
 #include <cmath>
 #include <limits>
 
@@ -14,6 +15,15 @@
 namespace clickwise::logs {
 
 namespace {
+
+// Words that loggers write where a sensor gave nothing: the cells are missing, the column is right.
+bool stands_for_no_reading(std::string_view cell) {
+  constexpr std::array<std::string_view, 7> words{"nan",  "-nan", "inf", "-inf",
+                                                  "null", "na",   "n/a"};
+  std::string lower;
+  for (const char c : trimmed(cell)) lower += static_cast<char>(c >= 'A' && c <= 'Z' ? c + 32 : c);
+  return std::find(words.begin(), words.end(), lower) != words.end();
+}
 
 constexpr double day_s = 86400.0;
 
@@ -89,7 +99,7 @@ ClockReadings TextRows::clock_readings(io::Columns& columns, std::size_t column,
 }
 
 void TextRows::refuse_words(const io::Column& column, std::size_t index) const {
-  if (column.unreadable_example.empty()) return;
+  if (column.unreadable_example.empty() || stands_for_no_reading(column.unreadable_example)) return;
   const bool has_number = std::any_of(column.values.begin(), column.values.end(),
                                       [](double value) { return !std::isnan(value); });
   if (has_number) return;

@@ -90,11 +90,14 @@ json::object travel_json(const bands::TravelUse& travel) {
 
 json::array stops_json(const std::vector<run::EndStop>& stops) {
   json::array array;
-  for (const run::EndStop& stop : stops)
-    array.push_back({{"t_s", number(stop.t_s)},
-                     {"depth_mm", number(to_mm(stop.depth_m))},
-                     {"closing_speed_mm_s", number(to_mm(stop.closing_speed_m_s))},
-                     {"energy_left_j", number(stop.energy_left_j)}});
+  for (const run::EndStop& stop : stops) {
+    json::object object{{"t_s", number(stop.t_s)},
+                        {"depth_mm", number(to_mm(stop.depth_m))},
+                        {"closing_speed_mm_s", number(to_mm(stop.closing_speed_m_s))}};
+    // 0 where the moving mass is not known, run/event.hpp.
+    if (stop.energy_left_j > 0.0) object["energy_left_j"] = number(stop.energy_left_j);
+    array.push_back(std::move(object));
+  }
   return array;
 }
 

@@ -245,7 +245,7 @@ class BadInput(program.Scratch):
                 self.assertAlmostEqual(self.counted_s(review["ends"]["rear"]), 20.0, delta=0.1)
 
     def test_a_sensor_unplugged_all_the_ride_leaves_the_other_end(self):
-        for value in ("4095", "1e90", "1e308"):
+        for value in ("4095", "1e90", "1e308", "nan", ""):
             with self.subTest(value):
                 text = self.cells(1, lambda row, cell: value)
                 review = self.review(self.write("dead.csv", text))
@@ -253,6 +253,9 @@ class BadInput(program.Scratch):
                 self.assertAlmostEqual(self.counted_s(review["ends"]["rear"]), 20.0, delta=0.1)
                 self.assertTrue(review["notes"])
                 self.assertFalse([step for step in review["advice"] if step["end"] == "front"])
+                text = self.run_ok("review", "dead.csv", "--bike", "ride/bike.toml").out
+                self.assertIn("no usable reading", text)
+                self.assertNotRegex(text, r"\bnan\b|\binf\b")
         both = self.cells(1, lambda row, cell: "4095").replace(",", ";")
         text = "\n".join(";".join(line.split(";")[:2] + ["0", "0"]) if row else line
                          for row, line in enumerate(both.splitlines())) + "\n"

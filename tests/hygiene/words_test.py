@@ -12,7 +12,7 @@ files = subprocess.run(["git", "ls-files"], cwd=root, capture_output=True, text=
                        check=True).stdout.splitlines()
 fixed = {"CMakeLists.txt", "README.md", "DEVELOPERS.md", "src", "include", "tests", "demo-runs",
          "docs"}
-leftovers = re.compile("|".join(["TO" + "DO", "FIX" + "ME", "XX" + "X"]))
+leftovers = re.compile(r"\b(" + "|".join(["TO" + "DO", "FIX" + "ME", "XX" + "X"]) + r")\b")
 faults = []
 for name in files:
     top = name.split("/")[0]
