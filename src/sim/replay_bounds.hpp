@@ -7,8 +7,15 @@
 
 namespace clickwise::sim {
 
-// Of setting `setting` (0: the ride's own) over figures[draw][setting].
-Change change_of(Metric metric, const std::vector<std::vector<LaneFigures>>& figures,
-                 std::size_t setting, const ReplayResult& result);
+// Figures by setting, the ride's own first: of the whole ride with the bike as it is written, and
+// of the draws [draw][setting] over the pieces that all draws rode.
+struct EnsembleFigures {
+  std::vector<LaneFigures> whole;
+  std::vector<std::vector<LaneFigures>> draws;
+  double whole_over_pieces = 1.0;  // seconds over seconds; for counts and joules
+};
+
+Change change_of(Metric metric, const EnsembleFigures& figures, std::size_t setting,
+                 const EndFigures& recorded);
 
 }  // namespace clickwise::sim

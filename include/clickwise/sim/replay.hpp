@@ -83,17 +83,17 @@ struct Change {
 struct Prediction {
   EndFigures figures;  // modelled, with the bike as it is written
   std::array<Change, metrics> changes{};
-  std::vector<EndFigures> by_draw;  // the figures of every bike of the ensemble
+  std::vector<EndFigures> by_draw;  // of every bike of the ensemble, over the pieces they rode
 
   const Change& change(Metric metric) const { return changes[static_cast<std::size_t>(metric)]; }
 };
 
 struct ReplayResult {
-  EndFigures recorded;                  // of the same samples
-  EndFigures modelled;                  // the settings of the ride, through the model
-  std::vector<EndFigures> modelled_by_draw;  // of every bike of the ensemble
-  std::vector<Prediction> predictions;  // one a candidate
-  double travel_rms_m = 0.0;            // modelled less recorded
+  EndFigures recorded;                       // of the same samples
+  EndFigures modelled;                       // the settings of the ride, through the model
+  std::vector<EndFigures> modelled_by_draw;  // the same at the settings of the ride
+  std::vector<Prediction> predictions;       // one a candidate
+  double travel_rms_m = 0.0;                 // modelled less recorded
   double velocity_rms_m_s = 0.0;
   double airborne_share = 0.0;  // of the replayed time: its ground is a guess
   double carried_share = 0.0;   // mean wheel force over the sprung weight; far from 1: masses or
@@ -108,6 +108,9 @@ struct ReplayOptions {
   double warm_up_s = 0.5;        // of each stretch: ridden but not counted
   double least_stretch_s = 2.0;  // shorter valid stretches are left out
   double block_s = 5.0;
+  // Draws beyond the first ride at most about so much of a longer ride, in pieces spread evenly
+  // over it: what a draw changes shows in minutes, and the rest would only cost time.
+  double longest_ensemble_s = 180.0;
 };
 
 // Rides every candidate (other settings, springs, masses; same stroke and linkage) over the
