@@ -103,6 +103,28 @@ TEST_CASE("a gap splits the ride; what it holds is neither read nor counted", "[
   CHECK(result.travel_rms_m < 1.5e-3);
 }
 
+// The bike as written rides it all either way; the draws' part is an estimate of the same spread.
+TEST_CASE("on a long ride the draws ride a part and agree with riding it all", "[sim][replay]") {
+  const Case made = case_number(5, 8, 65.0);
+  const std::vector<std::uint8_t> all(made.log.travel_m.size(), 1);
+  const auto input = input_of(made, all);
+  const std::vector<VehicleEnd> softer{made.settings[2].vehicle()};
+  const auto whole = replay(input, softer);
+  ReplayOptions options;
+  options.longest_ensemble_s = 25.0;
+  const auto pieces = replay(input, softer, options);
+  for (const Metric metric : {Metric::compression_high_share, Metric::compression_high_j,
+                              Metric::rebound_p95, Metric::travel_mean}) {
+    const Change& a = whole.predictions[0].change(metric);
+    const Change& b = pieces.predictions[0].change(metric);
+    CHECK(a.now == b.now);
+    CHECK(b.change >= a.low);
+    CHECK(b.change <= a.high);
+    CHECK(b.high - b.low != a.high - a.low);
+    CHECK((b.high - b.low) / (a.high - a.low) == Approx(1.0).margin(0.6));
+  }
+}
+
 TEST_CASE("a ride without a stretch worth riding is refused with a remedy", "[sim][replay]") {
   std::vector<std::uint8_t> valid(a_case().log.travel_m.size(), 0);
   std::fill_n(valid.begin(), 1500, std::uint8_t{1});
