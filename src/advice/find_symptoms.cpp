@@ -58,7 +58,7 @@ double weighted_ratio(const std::vector<double>& over, const std::vector<double>
 Symptom against_aim(SymptomKind kind, const EndRide& ride, const Sampled& figure, double aim,
                     double sign) {
   Symptom symptom{kind, ride.name, figure.value, figure.low, figure.high, aim, sign};
-  symptom.error = std::max(figure.error, 1e-3 * std::abs(aim) + 1e-9);
+  symptom.error = std::hypot(figure.error, aim_tolerance(kind));
   symptom.severity = std::max(0.0, sign * (figure.value - aim) / symptom.error);
   return symptom;
 }
@@ -71,7 +71,7 @@ Symptom rate_above_aim(SymptomKind kind, const Evidence& evidence, long count, d
   symptom.low = boost::math::gamma_p_inv(shape, 0.05) / minutes;
   symptom.high = boost::math::gamma_p_inv(shape, 0.95) / minutes;
   symptom.aim = aim;
-  symptom.error = std::sqrt(shape) / minutes;
+  symptom.error = std::hypot(std::sqrt(shape) / minutes, aim_tolerance(kind));
   if (symptom.value <= aim) return symptom;
   const double within_aim = std::max(boost::math::gamma_p(shape, aim * minutes), 1e-12);
   symptom.severity = std::max(0.0, std::sqrt(2.0) * boost::math::erfc_inv(2.0 * within_aim));

@@ -10,19 +10,20 @@ namespace {
 struct Row {
   std::string_view words;
   std::string_view unit;
+  double tolerance;
 };
 
 constexpr std::array<Row, 10> table{{
-    {"hard bottoming", "per minute"},
-    {"slow bottoming", "per minute"},
-    {"rides deep", "% of stroke"},
-    {"rides high", "% of stroke"},
-    {"unused travel", "% of stroke"},
-    {"packs down", "mm per hit"},
-    {"returns too fast", "top-outs per minute"},
-    {"harsh", "times the static load"},
-    {"held by the platform", "% of riding time"},
-    {"wallows", "of critical damping"},
+    {"hard bottoming", "per minute", 0.25},
+    {"slow bottoming", "per minute", 0.25},
+    {"rides deep", "% of stroke", 2.0},
+    {"rides high", "% of stroke", 2.0},
+    {"unused travel", "% of stroke", 3.0},
+    {"packs down", "mm per hit", 0.5},
+    {"returns too fast", "top-outs per minute", 3.0},
+    {"harsh", "times the static load", 0.3},
+    {"held by the platform", "% of riding time", 5.0},
+    {"wallows", "of critical damping", 0.02},
 }};
 
 }  // namespace
@@ -33,6 +34,10 @@ std::string_view words(SymptomKind kind) {
 
 std::string_view unit(SymptomKind kind) {
   return table.at(static_cast<std::size_t>(kind)).unit;
+}
+
+double aim_tolerance(SymptomKind kind) {
+  return table.at(static_cast<std::size_t>(kind)).tolerance;
 }
 
 double Symptom::certainty() const {

@@ -84,8 +84,7 @@ std::string section(const std::string& heading, const std::string& body) {
 std::string step_items(const advice::Step& step) {
   std::vector<std::string> items{"How sure: " + confidence_words(step.confidence),
                                  "Why: " + step.why};
-  for (const advice::Prediction& prediction : step.predicted)
-    items.push_back("Predicts " + prediction_words(prediction));
+  if (!step.predicted.empty()) items.push_back("Predicts " + predictions_words(step.predicted));
   return list(items);
 }
 

@@ -2,6 +2,7 @@
 
 #include <fmt/format.h>
 
+#include <cmath>
 #include <iterator>
 
 #include "clickwise/core/units.hpp"
@@ -56,13 +57,17 @@ void write_advice(Writer& out, const advice::Advice& advice) {
       if (i > 0) out.line("Only after riding that: {}.", step_words(step));
       out.line("  how sure  {}", confidence_words(step.confidence));
       out.line("  why       {}", step.why);
-      for (const advice::Prediction& prediction : step.predicted)
-        out.line("  predicts  {}", prediction_words(prediction));
+      if (!step.predicted.empty()) out.line("  predicts  {}", predictions_words(step.predicted));
     }
   }
   for (const advice::Handover& handover : advice.handovers)
-    out.line("Not for an adjuster: {}; look at the {}: {}.", symptom_words(handover.symptom),
-             handover.to, handover.why);
+    out.line("{}: {}; look at the {}: {}.",
+             handover.to == "bike file" ? "No click can be named" : "Not for an adjuster",
+             symptom_words(handover.symptom), handover.to, handover.why);
+}
+
+std::string speed(double m_s) {
+  return std::isfinite(m_s) ? fmt::format("{:6.0f}", to_mm(m_s)) : fmt::format("{:>6}", "-");
 }
 
 std::string joules(const std::optional<double>& work_j) {
@@ -72,11 +77,10 @@ std::string joules(const std::optional<double>& work_j) {
 void write_band(Writer& out, const std::string& direction, const bands::Band& band) {
   const double all_s = band.low_s + band.high_s;
   const double share = all_s > 0.0 ? 100.0 * band.high_s / all_s : 0.0;
-  out.line(
-      "  {:<11} {:6.0f}  {:8.2f} {:8.2f} {:5.1f}%  {:7.1f} {:7.1f}  {} {}  {:6.0f} {:6.0f} {:6.0f}",
-      direction, to_mm(band.split_m_s), band.low_s, band.high_s, share, band.low_m, band.high_m,
-      joules(band.low_j), joules(band.high_j), to_mm(band.p50_m_s), to_mm(band.p95_m_s),
-      to_mm(band.max_m_s));
+  out.line("  {:<11} {:6.0f}  {:8.2f} {:8.2f} {:5.1f}%  {:7.1f} {:7.1f}  {} {}  {} {} {}",
+           direction, to_mm(band.split_m_s), band.low_s, band.high_s, share, band.low_m,
+           band.high_m, joules(band.low_j), joules(band.high_j), speed(band.p50_m_s),
+           speed(band.p95_m_s), speed(band.max_m_s));
 }
 
 void write_bands(Writer& out, const workflow::EndReview& end) {
@@ -145,6 +149,10 @@ std::string review_text(const workflow::Review& review, const TextStyle& style) 
     out.heading(fmt::format("{}, {:.0f} mm ({} of riding, velocity noise {:.1f} mm/s)",
                             part_words(end.name, true), to_mm(end.stroke_m),
                             duration_words(end.riding_s), to_mm(end.velocity_noise_m_s)));
+    if (!(end.riding_s > 0.0)) {
+      out.line("  no usable reading: the faults and notes below say why");
+      continue;
+    }
     write_bands(out, end);
     write_travel(out, end);
     write_events(out, end);

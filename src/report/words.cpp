@@ -2,8 +2,8 @@
 
 #include <fmt/format.h>
 
+#include <array>
 #include <cmath>
-#include <map>
 
 namespace clickwise::report {
 
@@ -33,12 +33,35 @@ std::string confidence_words(double confidence) {
   return fmt::format("{} ({:.0f} %)", words, 100.0 * confidence);
 }
 
-std::string prediction_words(const advice::Prediction& prediction) {
-  static const std::map<std::string, std::string> names{{"bottom_outs", "bottom-outs"}};
-  const auto name = names.find(prediction.metric);
-  return fmt::format("{}: {:.3g} now, {:.3g} then (90 % bounds {:.3g} to {:.3g})",
-                     name == names.end() ? prediction.metric : name->second, prediction.now,
-                     prediction.then, prediction.low, prediction.high);
+std::string predictions_words(const std::vector<advice::Prediction>& predictions) {
+  struct Row {
+    std::string_view metric;
+    std::string_view words;
+    std::string_view unit;
+    double scale;
+    int decimals;
+  };
+  static constexpr std::array<Row, 7> rows{{
+      {"bottom_outs", "bottom-outs", "", 1.0, 0},
+      {"travel.mean_mm", "mean travel", " mm", 1.0, 1},
+      {"travel.p95_mm", "p95 travel", " mm", 1.0, 1},
+      {"bands.compression.high_share", "high-speed compression time", " %", 100.0, 1},
+      {"bands.compression.p95_mm_s", "p95 compression", " mm/s", 1.0, 0},
+      {"bands.rebound.high_share", "high-speed rebound time", " %", 100.0, 1},
+      {"bands.rebound.p95_mm_s", "p95 rebound", " mm/s", 1.0, 0},
+  }};
+  std::string words;
+  for (const Row& row : rows) {
+    for (const advice::Prediction& prediction : predictions) {
+      if (prediction.metric != row.metric) continue;
+      if (!words.empty()) words += "; ";
+      words += fmt::format("{} {:.{}f} to {:.{}f}{} ({:.{}f} to {:.{}f})", row.words,
+                           row.scale * prediction.now, row.decimals, row.scale * prediction.then,
+                           row.decimals, row.unit, row.scale * prediction.low, row.decimals,
+                           row.scale * prediction.high, row.decimals);
+    }
+  }
+  return words.empty() ? words : words + "; in brackets: 90 % bounds";
 }
 
 std::string symptom_words(const advice::Symptom& symptom) {

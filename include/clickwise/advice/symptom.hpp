@@ -28,8 +28,13 @@ std::string_view words(SymptomKind kind);
 // The unit of the symptom's value, as it is shown: "per minute", "% of stroke", "mm per hit", "".
 std::string_view unit(SymptomKind kind);
 
-// A figure beside its aim. Severity is the distance beyond the aim in units of the figure's own
-// standard error (block bootstrap over the ride); 0 when the aim is met.
+// How sharply the aim itself is known, in the unit of unit(kind): being off by less is of no
+// consequence to a rider. Common practice, no source.
+double aim_tolerance(SymptomKind kind);
+
+// A figure beside its aim. Severity is the distance beyond the aim in units of its uncertainty: the
+// figure's own standard error (block bootstrap over the ride) and the aim's tolerance together; 0
+// when the aim is met.
 struct Symptom {
   SymptomKind kind = SymptomKind::hard_bottoming;
   bike::EndName end = bike::EndName::front;
@@ -38,7 +43,7 @@ struct Symptom {
   double high = 0.0;
   double aim = 0.0;    // the bound that should hold, same unit
   double sign = 1.0;   // +1: the aim is an upper bound; -1: a lower one
-  double error = 1.0;  // standard error of the value
+  double error = 1.0;  // that uncertainty, one standard deviation
   double severity = 0.0;
 
   // Share of the sampling distribution that lies beyond the aim, 0.5 to 1 when the aim is crossed.
