@@ -14,8 +14,6 @@ namespace {
 // The figures of this file are common practice, no source.
 constexpr double rebound_over_compression = 2.0;  // of the equivalent damping coefficients
 constexpr double reference_speed_m_s = 0.4;       // peak of the sine that the damping ratio is of
-constexpr double bleed_open_over_closed = 10.0;
-constexpr double valve_closed_over_open = 4.0;
 
 // A curve through (1, 1) in units of the reference speed and a reference force.
 struct Shape {
@@ -74,17 +72,11 @@ bike::HydraulicSide side_of(const Law& law, const std::optional<bike::Clicks>& b
   side.fixed_bleed_m_s = law.bleed_m_s;
   side.fixed_valve_n = law.opening_n;
   if (bleed) {
-    const double out = static_cast<double>(bleed->setting) / bleed->clicks;
-    const double closed = law.bleed_m_s / (1.0 + (bleed_open_over_closed - 1.0) * out);
-    side.bleed =
-        bike::Clicks{closed, closed * bleed_open_over_closed, bleed->clicks, bleed->setting};
+    side.bleed = plausible_bleed(law.bleed_m_s, *bleed);
     side.fixed_bleed_m_s.reset();
   }
   if (valve) {
-    const double out = static_cast<double>(valve->setting) / valve->clicks;
-    const double closed = law.opening_n / (1.0 - (1.0 - 1.0 / valve_closed_over_open) * out);
-    side.valve =
-        bike::Clicks{closed, closed / valve_closed_over_open, valve->clicks, valve->setting};
+    side.valve = plausible_valve(law.opening_n, *valve);
     side.fixed_valve_n.reset();
   }
   return side;

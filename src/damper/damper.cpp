@@ -15,6 +15,13 @@ std::optional<bike::Clicks>& clicks_of(bike::HydraulicDamper& sides, bike::Adjus
   return bike::is_bleed(name) ? side.bleed : side.valve;
 }
 
+// Whether a dyno fit, where there is one, tells what the adjuster's clicks move.
+bool measured(const DynoFit* fit, bike::Adjuster name) {
+  if (!fit) return true;
+  const SideFit& side = bike::acts_in_compression(name) ? fit->compression : fit->rebound;
+  return bike::is_bleed(name) ? side.bleed_clicks_known : side.valve_clicks_known;
+}
+
 Damper from_assumed(const bike::AssumedDamper& assumed, const bike::End& end,
                     std::optional<double> sprung_mass_kg, const core::Place& place) {
   if (!sprung_mass_kg)
@@ -29,17 +36,6 @@ Damper from_assumed(const bike::AssumedDamper& assumed, const bike::End& end,
 
 }  // namespace
 
-Law law_of(const bike::HydraulicSide& side) {
-  Law law;
-  law.bleed_m_s = side.bleed ? side.bleed->value() : side.fixed_bleed_m_s.value_or(0.0);
-  law.port_n_s2_m2 = side.port_n_s2_m2;
-  if (side.valve || side.fixed_valve_n) {
-    law.opening_n = side.valve ? side.valve->value() : *side.fixed_valve_n;
-    law.slope_n_s_m = side.slope_n_s_m;
-  }
-  return law;
-}
-
 Damper Damper::from(const bike::End& end, std::optional<double> sprung_mass_kg,
                     const core::Place& place) {
   if (!end.damper)
@@ -50,16 +46,18 @@ Damper Damper::from(const bike::End& end, std::optional<double> sprung_mass_kg,
     return Damper(*hydraulic, false);
   if (const auto* assumed = std::get_if<bike::AssumedDamper>(&*end.damper))
     return from_assumed(*assumed, end, sprung_mass_kg, place);
-  throw core::JobError(place, "dyno points are not fitted by this version of the program",
-                       "describe the damper with kind = \"hydraulic\", or with kind = \"assumed\" "
-                       "and damping_ratio = 0.30");
+  auto fit =
+      std::make_shared<const DynoFit>(fit_dyno(std::get<bike::DynoDamper>(*end.damper), place));
+  Damper damper(fit->sides, false);
+  damper.fit_ = std::move(fit);
+  return damper;
 }
 
 Damper::Damper(bike::HydraulicDamper sides, bool assumed)
     : sides_(std::move(sides)), assumed_(assumed) {}
 
 Curve Damper::curve() const {
-  return {law_of(sides_.compression), law_of(sides_.rebound), assumed_};
+  return {law_of(sides_.compression), law_of(sides_.rebound), assumed_, scatter_share()};
 }
 
 Damper Damper::with(bike::Adjuster adjuster, int setting) const {
@@ -77,7 +75,12 @@ std::optional<AdjusterRange> Damper::adjuster(bike::Adjuster name) const {
   Damper copy = *this;
   const auto& clicks = clicks_of(copy.sides_, name);
   if (!clicks) return std::nullopt;
-  return AdjusterRange{name, clicks->setting, clicks->clicks};
+  return AdjusterRange{name, clicks->setting, clicks->clicks, assumed_ || !measured(fit(), name)};
+}
+
+double Damper::scatter_share() const {
+  if (assumed_) return assumed_scatter_share;
+  return fit_ ? std::min(fit_->scatter_share, assumed_scatter_share) : written_scatter_share;
 }
 
 std::vector<AdjusterRange> Damper::adjusters() const {

@@ -151,9 +151,9 @@ Standing stand(const Bounded& problem, const VectorXd& p) {
   return now;
 }
 
-bool stationary(const Standing& now, double cost_at_start) {
+bool stationary(const Standing& now, double exact_cost) {
   const double length = now.f.norm();
-  if (length * length <= 1e-24 * cost_at_start) return true;
+  if (length * length <= exact_cost) return true;
   for (Index j = 0; j < now.J.cols(); ++j) {
     const double column = now.J.col(j).norm();
     if (now.fixed[static_cast<std::size_t>(j)] || column == 0.0) continue;
@@ -165,6 +165,7 @@ bool stationary(const Standing& now, double cost_at_start) {
 // (J^T J)^-1 of the free parameters, by the singular values of J with its columns scaled to one.
 // Directions that J does not see get an infinite variance.
 MatrixXd inverse_of_normal(const MatrixXd& J) {
+  if (J.cols() == 0) return {};
   VectorXd norms = J.colwise().norm();
   for (double& norm : norms)
     if (norm == 0.0) norm = 1.0;
@@ -229,6 +230,7 @@ LeastSquaresSummary nowhere(const VectorXd& start) {
 void LeastSquaresOptions::validate() const {
   check("cost_tolerance", cost_tolerance, 0.0, 0.1);
   check("parameter_tolerance", parameter_tolerance, 0.0, 0.1);
+  check("exact_cost", exact_cost, 0.0, 1e100);
   check("first_step", first_step, 1e-3, 100.0);
   check("most_evaluations", most_evaluations, 1, 1e9);
   check("most_rounds", most_rounds, 1, 1e6);
@@ -253,7 +255,7 @@ LeastSquaresSummary least_squares(const LeastSquaresProblem& problem,
   VectorXd f;
   bounded(p, f);
   if (!f.allFinite() || f[0] == beyond_the_model) return nowhere(p);
-  const double cost_at_start = f.squaredNorm();
+  const double exact_cost = std::max(options.exact_cost, 1e-24 * f.squaredNorm());
 
   Descent descent;
   Standing now;
@@ -261,7 +263,7 @@ LeastSquaresSummary least_squares(const LeastSquaresProblem& problem,
     descent = descend(bounded, p, options);
     p = bounded.inside(p);
     now = stand(bounded, p);
-    summary.converged = descent.ended && stationary(now, cost_at_start);
+    summary.converged = descent.ended && stationary(now, exact_cost);
     if (!descent.ended) break;
   }
   summary.parameters = p;

@@ -141,9 +141,6 @@ TEST_CASE("a damper that cannot be laid out says what to write", "[damper]") {
   end.spring.reset();
   CHECK_THAT(refusal<core::JobError>([&] { Damper::from(end, 20.0, place); }),
              Contains("spring") && Contains("; add"));
-  end.damper = bike::DynoDamper{"fork_dyno.csv", {}, {}, {}, {}};
-  CHECK_THAT(refusal<core::JobError>([&] { Damper::from(end, 20.0, place); }),
-             Contains("dyno") && Contains("kind = \"hydraulic\""));
   end.damper.reset();
   CHECK_THAT(refusal<core::JobError>([&] { Damper::from(end, 20.0, place); }),
              Contains("no damper"));

@@ -224,6 +224,20 @@ TEST_CASE("a least value beyond a bound is found on the bound", "[least_squares]
   }
 }
 
+TEST_CASE("with every parameter at a bound the corner is the answer", "[least_squares]") {
+  LeastSquaresProblem problem = valley();
+  problem.lower = vector_of({-2.0, 4.5});
+  problem.upper = vector_of({-1.5, 9.0});
+  problem.start = vector_of({-1.5, 4.5});
+  // Along x <= -1.5 and y >= 4.5 the valley's floor is y = x^2 <= 4, so y = 4.5 holds; of x the
+  // gradient decides: 400 x (x^2 - y) + 2 (x - 1) at (-2, 4.5) is 394 > 0, so x = -2 holds.
+  const LeastSquaresSummary found = least_squares(problem);
+  REQUIRE(found.usable());
+  CHECK(found.parameters[0] == -2.0);
+  CHECK(found.parameters[1] == 4.5);
+  CHECK(found.at_bound == std::vector<bool>{true, true});
+}
+
 TEST_CASE("a parameter that does not matter is said to be undetermined", "[least_squares]") {
   LeastSquaresProblem problem = valley();
   problem.start = vector_of({-1.2, 1.0, 7.0});

@@ -39,7 +39,8 @@ struct Law {
 struct Curve {
   Law compression;
   Law rebound;
-  bool assumed = false;  // nobody measured it
+  bool assumed = false;         // nobody measured it
+  double scatter_share = 0.05;  // relative, of the forces; Damper::scatter_share
 
   // Signed: positive velocity (compression) gives positive force. 0 at v = 0.
   double force_n(double velocity_m_s) const;

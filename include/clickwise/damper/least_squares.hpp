@@ -25,6 +25,7 @@ struct LeastSquaresProblem {
 struct LeastSquaresOptions {
   double cost_tolerance = 1e-14;       // relative, of |f|^2; 0 to 0.1
   double parameter_tolerance = 1e-14;  // relative, of p; 0 to 0.1
+  double exact_cost = 0.0;             // |f|^2 below this is rounding: nothing left to find; >= 0
   double first_step = 1.0;             // of the scaled length of the start; 1e-3 to 100
   int most_evaluations = 4000;         // of f in one descent, Jacobians apart; >= 1
   int most_rounds = 12;                // descents, each from where the one before ended; >= 1
