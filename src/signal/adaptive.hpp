@@ -5,7 +5,9 @@
 #include <span>
 #include <vector>
 
+#include "adaptive_passes.hpp"
 #include "clickwise/signal/smoother.hpp"
+#include "reflection.hpp"
 #include "spline_bank.hpp"
 
 namespace clickwise::signal {
@@ -17,7 +19,8 @@ class AdaptiveSmoother {
 public:
   AdaptiveSmoother(double rate_hz, double noise_m, double memory_s);
 
-  Smoothed smooth(std::span<const double> readings_m) const;
+  // Returns the cut-off, see smoother.hpp.
+  double smooth(std::span<const double> readings_m, const SmoothedSeries& out) const;
 
   // Standard deviation of the velocity where no band is let through, for readings of this noise.
   double rest_velocity_noise(double noise_m) const { return noise_m * slowest_noise_gain_; }
@@ -25,16 +28,12 @@ public:
   static constexpr std::size_t shortest = 9;  // samples: the derivative's span
 
 private:
-  struct Chunk;
-
   void find_variances();
-  template <std::size_t reach>
-  void run_bank(Chunk& chunk) const;
-  void average_power(Chunk& chunk) const;
-  void find_first_gains(Chunk& chunk) const;
-  void find_alert(Chunk& chunk) const;
-  void combine(Chunk& chunk, Smoothed& out) const;
-  void widen_at_ends(std::vector<double>& sigma_m_s) const;
+  BankRows bank_rows() const;
+  GainRule gain_rule() const;
+  void read_chunk(std::span<const double> readings_m, const OddReflection& continued,
+                  std::size_t first, std::vector<double>& out) const;
+  void widen_at_ends(std::span<double> sigma_m_s) const;
   double effective_cutoff_hz(double open_gains) const;
 
   double rate_hz_;

@@ -52,22 +52,21 @@ double half_gain_hz(const SavitzkyGolay& filter) {
   return low + 0.5 * step;
 }
 
-Smoothed smooth_fixed(std::span<const double> readings_m, const SmootherModel& model) {
-  Smoothed out;
+double smooth_fixed(std::span<const double> readings_m, const SmootherModel& model,
+                    const SmoothedSeries& out) {
   const SavitzkyGolay slope = quadratic(model, 1);
-  out.position_m = filtered(quadratic(model, 0), readings_m);
-  out.velocity_m_s = filtered(slope, readings_m);
+  std::ranges::copy(filtered(quadratic(model, 0), readings_m), out.position_m.begin());
+  std::ranges::copy(filtered(slope, readings_m), out.velocity_m_s.begin());
   const std::size_t n = readings_m.size();
   const auto half = static_cast<std::size_t>(model.span_samples / 2);
-  out.sigma_m_s.assign(n, model.noise_m * noise_gain(coefficients(slope)));
+  std::ranges::fill(out.sigma_m_s, model.noise_m * noise_gain(coefficients(slope)));
   for (std::size_t i = 0; i < half; ++i) {
     const double at = static_cast<double>(half) - static_cast<double>(i);
     const double sigma = model.noise_m * noise_gain(coefficients(slope, at));
     out.sigma_m_s[i] = sigma;
     out.sigma_m_s[n - 1 - i] = sigma;
   }
-  out.cutoff_hz = half_gain_hz(quadratic(model, 0));
-  return out;
+  return half_gain_hz(quadratic(model, 0));
 }
 
 double rest_velocity_noise(const SmootherModel& model, double rest_noise_m) {
@@ -96,15 +95,28 @@ std::size_t shortest_stretch(const SmootherModel& model) {
                                 : AdaptiveSmoother::shortest;
 }
 
-Smoothed smooth(std::span<const double> readings_m, const SmootherModel& model) {
+double smooth(std::span<const double> readings_m, const SmootherModel& model,
+              const SmoothedSeries& out) {
   require_positive("rate_hz", model.rate_hz);
   require_finite(readings_m);
-  if (readings_m.size() < shortest_stretch(model)) {
-    throw std::invalid_argument(fmt::format("readings_m holds {} samples; must hold at least {}",
-                                            readings_m.size(), shortest_stretch(model)));
+  const std::size_t n = readings_m.size();
+  if (n < shortest_stretch(model)) {
+    throw std::invalid_argument(fmt::format("readings_m holds {} samples; must hold at least {}", n,
+                                            shortest_stretch(model)));
   }
-  if (model.span_samples > 0) return smooth_fixed(readings_m, model);
-  return AdaptiveSmoother(model.rate_hz, model.noise_m, model.memory_s).smooth(readings_m);
+  if (out.position_m.size() != n || out.velocity_m_s.size() != n || out.sigma_m_s.size() != n)
+    throw std::invalid_argument(fmt::format("out must hold {} samples, as readings_m does", n));
+  if (model.span_samples > 0) return smooth_fixed(readings_m, model, out);
+  return AdaptiveSmoother(model.rate_hz, model.noise_m, model.memory_s).smooth(readings_m, out);
+}
+
+Smoothed smooth(std::span<const double> readings_m, const SmootherModel& model) {
+  Smoothed out;
+  out.position_m.resize(readings_m.size());
+  out.velocity_m_s.resize(readings_m.size());
+  out.sigma_m_s.resize(readings_m.size());
+  out.cutoff_hz = smooth(readings_m, model, {out.position_m, out.velocity_m_s, out.sigma_m_s});
+  return out;
 }
 
 std::string describe(const SmootherModel& model) {

@@ -19,7 +19,7 @@ constexpr double slowest_share = 1.0 / 20.0;  // of the fastest, at low rates
 constexpr double settled = 1e-8;              // share of a transient left
 
 // The root inside the unit circle of z + 1/z = 2 - s.
-Complex pole(Complex s) {
+Complex root_inside(Complex s) {
   const Complex half = 1.0 - s / 2.0;
   const Complex z = half + std::sqrt(half * half - 1.0);
   return std::abs(z) < 1.0 ? z : 1.0 / z;
@@ -42,8 +42,8 @@ SplineBank::SplineBank(double rate_hz) : rate_hz_(rate_hz) {
   for (Eigen::Index k = 0; k < bank_size; ++k) {
     cutoff_hz_[k] = top * std::pow(step, static_cast<double>(k));
     const double c = std::pow(difference_gain(cutoff_hz_[k], rate_hz), 2.0);
-    const double real = pole(-c).real();
-    const Complex pair = pole(c * std::polar(1.0, pi / 3.0));
+    const double real = root_inside(-c).real();
+    const Complex pair = root_inside(c * std::polar(1.0, pi / 3.0));
     pole_[k] = real;
     real_gain_[k] = 1.0 - real;
     first_[k] = 2.0 * pair.real();

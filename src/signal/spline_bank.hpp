@@ -17,21 +17,15 @@ public:
 
   const Lanes& cutoff_hz() const { return cutoff_hz_; }
 
-  // One sample of a recursive pass: a forward pass over the readings, then a backward pass over its
-  // results, give the members' outputs. A transient dies out within settling_samples().
-  struct Pass {
-    explicit Pass(const Lanes& start) : u(start), w1(start), w2(start) {}
-    Lanes u, w1, w2;
-  };
-  template <typename Value>
-  const Lanes& step(Pass& pass, const Value& value) const {
-    pass.u = real_gain_ * value + pole_ * pass.u;
-    const Lanes w = pair_gain_ * pass.u + first_ * pass.w1 + second_ * pass.w2;
-    pass.w2 = pass.w1;
-    pass.w1 = w;
-    return pass.w1;
-  }
-
+  // The members as recursive filters: u_i = real_gain y_i + pole u_(i-1), then
+  // w_i = pair_gain u_i + first w_(i-1) + second w_(i-2); a forward pass over the readings, then a
+  // backward pass over its results, give the outputs. A transient dies out within
+  // settling_samples().
+  const Lanes& pole() const { return pole_; }
+  const Lanes& real_gain() const { return real_gain_; }
+  const Lanes& first() const { return first_; }
+  const Lanes& second() const { return second_; }
+  const Lanes& pair_gain() const { return pair_gain_; }
   std::size_t settling_samples() const { return settling_; }
 
   // Gain of member k at w radians a sample.
@@ -40,9 +34,8 @@ public:
 private:
   double rate_hz_;
   Lanes cutoff_hz_;
-  Lanes pole_, real_gain_;  // of the real pole
-  Lanes first_{}, second_{},
-      pair_gain_{};  // of the pair: w_i = pair_gain u_i + first w_-1 + second w_-2
+  Lanes pole_, real_gain_;            // of the real pole
+  Lanes first_, second_, pair_gain_;  // of the conjugate pair
   std::size_t settling_ = 0;
 };
 

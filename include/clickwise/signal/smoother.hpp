@@ -80,6 +80,18 @@ std::size_t shortest_stretch(const SmootherModel& model);
 // std::invalid_argument on readings that are not finite or fewer than shortest_stretch(). O(n).
 Smoothed smooth(std::span<const double> readings_m, const SmootherModel& model);
 
+// Where a stretch's series go: as many values each as there are readings.
+struct SmoothedSeries {
+  std::span<double> position_m;
+  std::span<double> velocity_m_s;
+  std::span<double> sigma_m_s;
+};
+
+// The same into series that are there; returns cutoff_hz. Throws std::invalid_argument where their
+// sizes differ, too.
+double smooth(std::span<const double> readings_m, const SmootherModel& model,
+              const SmoothedSeries& out);
+
 // One sentence for the report: what was used and what the noise is.
 std::string describe(const SmootherModel& model);
 
