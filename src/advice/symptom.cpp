@@ -15,12 +15,12 @@ struct Row {
 
 constexpr std::array<Row, 10> table{{
     {"hard bottoming", "per minute", 0.25},
-    {"slow bottoming", "per minute", 0.25},
+    {"slow bottoming", "per minute", 1.0},
     {"rides deep", "% of stroke", 2.0},
     {"rides high", "% of stroke", 2.0},
     {"unused travel", "% of stroke", 3.0},
     {"packs down", "mm per hit", 0.5},
-    {"returns too fast", "top-outs per minute", 3.0},
+    {"returns too fast", "top-outs per minute", 5.0},
     {"harsh", "times the static load", 0.3},
     {"held by the platform", "% of riding time", 5.0},
     {"wallows", "of critical damping", 0.02},

@@ -171,7 +171,7 @@ struct Aims {
   double travel_mean_share_high = 0.38;  // above it the end rides deep
   double travel_used_share = 0.90;       // largest travel at least this share of the stroke
   double packing_mm_per_hit = 2.0;       // climb of the start travel within a hit train
-  double top_outs_per_minute = 15.0;     // at most
+  double top_outs_per_minute = 25.0;     // at most
   double body_damping_low = 0.20;        // damping ratio of the body on this end, at least
   double harsh_force_ratio = 3.0;        // damper force at p95 over static load, at most
   double held_share = 0.45;                   // of riding time standing still, at most
