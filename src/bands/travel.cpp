@@ -3,6 +3,7 @@
 #include <fmt/format.h>
 
 #include <algorithm>
+#include <array>
 #include <cmath>
 #include <numeric>
 #include <stdexcept>
@@ -30,6 +31,15 @@ struct Bins {
   double width_m;
   double first;
   double last;
+
+  // Rounded down by hand: std::floor is a call where the oldest machines of a family have no
+  // instruction for it.
+  std::size_t of(double value_m) const {
+    const double place = std::clamp(value_m / width_m, first, last);
+    const auto towards_zero = static_cast<long long>(place);
+    const long long below = towards_zero - (place < static_cast<double>(towards_zero) ? 1 : 0);
+    return static_cast<std::size_t>(below - static_cast<long long>(first));
+  }
 };
 
 Bins bins_over(double least_m, double most_m, double stroke_m) {
@@ -42,9 +52,8 @@ Bins bins_over(double least_m, double most_m, double stroke_m) {
 
 TravelHistogram histogram_of(const std::vector<double>& values, double interval_s,
                              double stroke_m) {
-  const auto [least, most] = values.empty() ? std::pair{0.0, 0.0}
-                                            : std::pair{*std::ranges::min_element(values),
-                                                        *std::ranges::max_element(values)};
+  const auto [least, most] =
+      values.empty() ? std::ranges::minmax_result{0.0, 0.0} : std::ranges::minmax(values);
   const Bins bins = bins_over(least, most, stroke_m);
   const auto count = static_cast<std::size_t>(bins.last - bins.first) + 1;
   TravelHistogram histogram;
@@ -53,10 +62,8 @@ TravelHistogram histogram_of(const std::vector<double>& values, double interval_
   histogram.edges_m.front() = std::min(histogram.edges_m.front(), least);
   if (most >= histogram.edges_m.back()) histogram.edges_m.back() = std::nextafter(most, HUGE_VAL);
   histogram.seconds.assign(count, 0.0);
-  for (const double value : values) {
-    const double bin = std::clamp(std::floor(value / bins.width_m), bins.first, bins.last);
-    histogram.seconds[static_cast<std::size_t>(bin - bins.first)] += interval_s;
-  }
+  for (const double value : values) histogram.seconds[bins.of(value)] += 1.0;
+  for (double& seconds : histogram.seconds) seconds *= interval_s;
   return histogram;
 }
 
@@ -67,15 +74,16 @@ TravelUse travel_use(std::span<const double> travel_m, std::span<const std::uint
   if (!(stroke_m > 0.0) || !std::isfinite(stroke_m))
     throw std::invalid_argument(
         fmt::format("stroke = {} m; must be positive and finite", stroke_m));
-  std::vector<double> values = counted_travel(travel_m, counted);
+  const std::vector<double> values = counted_travel(travel_m, counted);
   TravelUse use;
   use.histogram = histogram_of(values, interval_s, stroke_m);
   if (values.empty()) return use;
   use.mean_m =
       std::accumulate(values.begin(), values.end(), 0.0) / static_cast<double>(values.size());
   use.max_m = *std::ranges::max_element(values);
-  use.p50_m = core::quantile(values, 0.50);
-  use.p95_m = core::quantile(std::move(values), 0.95);
+  const auto quantiles = core::quantiles(values, std::array{0.50, 0.95});
+  use.p50_m = quantiles[0];
+  use.p95_m = quantiles[1];
   return use;
 }
 

@@ -12,26 +12,26 @@ Polyline::Polyline(std::vector<double> x, std::vector<double> y)
   for (std::size_t i = 1; i < x_.size(); ++i) {
     if (!(x_[i] > x_[i - 1]))
       throw std::invalid_argument("Polyline: x must be strictly increasing");
+    slope_.push_back((y_[i] - y_[i - 1]) / (x_[i] - x_[i - 1]));
     integral_[i] = integral_[i - 1] + 0.5 * (y_[i] + y_[i - 1]) * (x_[i] - x_[i - 1]);
   }
 }
 
 std::size_t Polyline::piece(double x) const {
+  if (x_.size() == 2) return 0;
   const auto after = std::upper_bound(x_.begin(), x_.end(), x);
   const auto i = static_cast<std::size_t>(after - x_.begin());
   return std::clamp<std::size_t>(i, 1, x_.size() - 1) - 1;
 }
 
 double Polyline::slope(double x) const {
-  if (x_.size() < 2) return 0.0;
-  const std::size_t i = piece(x);
-  return (y_[i + 1] - y_[i]) / (x_[i + 1] - x_[i]);
+  return x_.size() < 2 ? 0.0 : slope_[piece(x)];
 }
 
 double Polyline::operator()(double x) const {
   if (x_.size() < 2) return y_[0] + 0.0 * x;
   const std::size_t i = piece(x);
-  return y_[i] + (y_[i + 1] - y_[i]) / (x_[i + 1] - x_[i]) * (x - x_[i]);
+  return y_[i] + slope_[i] * (x - x_[i]);
 }
 
 double Polyline::integral(double x) const {

@@ -36,16 +36,16 @@ std::size_t flat_until(const FaultSearch& search, std::size_t begin, std::size_t
 }
 
 bool held_at_converter_end(const FaultSearch& search, std::size_t begin, std::size_t end) {
-  return std::ranges::find(converter_ends, search.readings()[begin]) != converter_ends.end() &&
-         metres_outside(search, begin) > outside_at_converter_end_share * search.range.stroke_m &&
+  return metres_outside(search, begin) > outside_at_converter_end_share * search.range.stroke_m &&
+         std::ranges::find(converter_ends, search.readings()[begin]) != converter_ends.end() &&
          flat_until(search, begin, end, 0.0) - begin >= fewest_at_converter_end;
 }
 
 bool held_outside(const FaultSearch& search, std::size_t begin, std::size_t end) {
+  if (!outside(search, begin)) return false;
   const auto& x = search.range.travel_m.x();
   const double band = search.options.flat_share * (x.back() - x.front());
-  return outside(search, begin) &&
-         flat_until(search, begin, end, band) - begin >= search.samples(held_flat_s, 4);
+  return flat_until(search, begin, end, band) - begin >= search.samples(held_flat_s, 4);
 }
 
 run::Stretch padded(run::Stretch stretch, run::Stretch within) {

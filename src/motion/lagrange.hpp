@@ -19,10 +19,13 @@ inline double straight(const Node& a, const Node& b, double place) {
 inline double cubic(const std::array<Node, 4>& nodes, double place) {
   double sum = 0.0;
   for (const Node& node : nodes) {
-    double weight = 1.0;
-    for (const Node& other : nodes)
-      if (&other != &node) weight *= (place - other.place) / (node.place - other.place);
-    sum += weight * node.travel_m;
+    double above = 1.0, below = 1.0;
+    for (const Node& other : nodes) {
+      if (&other == &node) continue;
+      above *= place - other.place;
+      below *= node.place - other.place;
+    }
+    sum += above / below * node.travel_m;
   }
   return sum;
 }

@@ -25,12 +25,12 @@ run::Motion empty_motion(const run::TimeBase& base) {
   return motion;
 }
 
-void write(run::Motion& motion, const Piece& piece, const signal::Smoothed& smoothed) {
-  const auto at = static_cast<std::ptrdiff_t>(piece.first);
-  std::ranges::copy(smoothed.position_m, motion.travel_m.begin() + at);
-  std::ranges::copy(smoothed.velocity_m_s, motion.velocity_m_s.begin() + at);
-  std::ranges::copy(smoothed.sigma_m_s, motion.velocity_sigma_m_s.begin() + at);
-  std::fill_n(motion.valid.begin() + at, piece.travel_m.size(), std::uint8_t{1});
+// The part of the motion that a piece fills.
+signal::SmoothedSeries part_of(run::Motion& motion, const Piece& piece) {
+  const auto part = [&](std::vector<double>& series) {
+    return std::span(series).subspan(piece.first, piece.travel_m.size());
+  };
+  return {part(motion.travel_m), part(motion.velocity_m_s), part(motion.velocity_sigma_m_s)};
 }
 
 // No reading stands behind the bridge over a masked sample.
@@ -74,9 +74,10 @@ bool smooth_into(run::Motion& motion, const std::vector<Piece>& pieces,
   std::vector<PieceCutoff> cutoffs;
   for (const Piece& piece : pieces) {
     if (piece.travel_m.size() < signal::shortest_stretch(model)) continue;
-    const signal::Smoothed smoothed = signal::smooth(piece.travel_m, model);
-    write(motion, piece, smoothed);
-    cutoffs.push_back({smoothed.cutoff_hz, piece.travel_m.size()});
+    const double cutoff_hz = signal::smooth(piece.travel_m, model, part_of(motion, piece));
+    std::fill_n(motion.valid.begin() + static_cast<std::ptrdiff_t>(piece.first),
+                piece.travel_m.size(), std::uint8_t{1});
+    cutoffs.push_back({cutoff_hz, piece.travel_m.size()});
   }
   motion.cutoff_hz = median_cutoff_hz(cutoffs);
   return !cutoffs.empty();
@@ -91,11 +92,10 @@ PotentiometerMotion from_potentiometer(const run::Recording& recording, std::siz
   ReadingFaults found =
       find_reading_faults(recording, channel, {end.sensor.travel_m, end.stroke_m}, options.faults);
   PotentiometerMotion result{empty_motion(clock.base), std::move(found.faults), {}, {}};
-  const std::vector<double> travel_m = to_travel(readings.readings, end.sensor.travel_m);
-  result.excess = stroke_excess(travel_m, found.usable, recording.interval_s, end.stroke_m);
+  result.excess = stroke_excess(found.travel_m, found.usable, recording.interval_s, end.stroke_m);
   result.notes = describe(result.excess, end.stroke_m, readings.name);
   const auto pieces =
-      resample(recording, clock, travel_m, found.usable, options.longest_bridge_samples);
+      resample(recording, clock, found.travel_m, found.usable, options.longest_bridge_samples);
   if (pieces.empty() || !smooth_into(result.motion, pieces, options))
     result.notes.push_back(fmt::format(
         "{} has no stretch of usable readings; check its plug, its column and its calibration",

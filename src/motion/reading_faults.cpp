@@ -44,8 +44,10 @@ ReadingFaults find_reading_faults(const run::Recording& recording, std::size_t c
                                             range.stroke_m, recording.interval_s));
   FaultSearch search{
       recording, channel, range, options, to_travel(readings.readings, range.travel_m), {}};
-  for (const double travel : search.travel_m)
-    search.usable.push_back(static_cast<std::uint8_t>(std::isfinite(travel)));
+  search.usable.resize(search.travel_m.size());
+  std::ranges::transform(search.travel_m, search.usable.begin(), [](double travel) {
+    return static_cast<std::uint8_t>(std::isfinite(travel));
+  });
   ReadingFaults found;
   const auto book = [&](run::FaultKind kind, const Masked& masked) {
     found.faults.add(kind, readings.name, masked.count,
@@ -56,6 +58,7 @@ ReadingFaults find_reading_faults(const run::Recording& recording, std::size_t c
   book(run::FaultKind::missing, mask_open_input(search));
   book(run::FaultKind::spike, mask_spikes(search));
   found.usable = std::move(search.usable);
+  found.travel_m = std::move(search.travel_m);
   return found;
 }
 

@@ -46,6 +46,7 @@ Piece piece_of(const std::vector<Node>& nodes, std::size_t free, std::size_t sam
   const double last =
       std::min(std::floor(nodes.back().place + on_node), static_cast<double>(samples) - 1.0);
   piece.first = static_cast<std::size_t>(first);
+  if (last >= first) piece.travel_m.reserve(static_cast<std::size_t>(last - first) + 1);
   std::size_t k = 0;
   for (double place = first; place <= last; place += 1.0) {
     while (k + 1 < nodes.size() && nodes[k + 1].place <= place + on_node) ++k;
@@ -61,6 +62,7 @@ std::vector<Piece> resample(const run::Recording& recording, const UniformClock&
                             int longest_bridge) {
   std::vector<Piece> pieces;
   std::vector<Node> nodes;
+  nodes.reserve(travel_m.size());
   std::size_t free = 0;
   const auto close = [&] {
     if (nodes.empty()) return;

@@ -17,6 +17,7 @@ constexpr double noise_sigmas = 8.0;
 double noise_m(const FaultSearch& search) {
   const auto& x = search.travel_m;
   std::vector<double> bends;
+  bends.reserve(x.size());
   for (const run::Stretch& run : search.usable_runs())
     for (std::size_t i = run.begin + 1; i + 1 < run.end; ++i)
       bends.push_back(std::abs(x[i - 1] - 2.0 * x[i] + x[i + 1]));

@@ -1,7 +1,11 @@
 #include "clickwise/core/statistics.hpp"
 
+#include <algorithm>
+#include <array>
 #include <catch2/catch.hpp>
 #include <cmath>
+#include <limits>
+#include <random>
 #include <vector>
 
 namespace core = clickwise::core;
@@ -51,4 +55,44 @@ TEST_CASE("a quantile is straight between order statistics", "[core]") {
   CHECK(core::quantile({4.0, 1.0, 3.0, 2.0}, 1.0) == 4.0);
   CHECK(core::quantile({7.0}, 0.3) == 7.0);
   CHECK(std::isnan(core::quantile({}, 0.5)));
+}
+
+TEST_CASE("quantiles of many values are those of the sorted values", "[core]") {
+  std::mt19937 chance(5);
+  std::lognormal_distribution<double> skewed(0.0, 2.0);
+  std::vector<double> values;
+  const auto check = [&] {
+    std::vector<double> sorted = values;
+    std::ranges::sort(sorted);
+    for (const double p : {0.0, 1e-4, 0.05, 0.3, 0.5, 0.95, 0.99995, 1.0}) {
+      const double place = p * static_cast<double>(sorted.size() - 1);
+      const auto below = static_cast<std::size_t>(place);
+      const double low = sorted[below];
+      const double high = sorted[std::min(below + 1, sorted.size() - 1)];
+      const double expected = low + (place - std::floor(place)) * (high - low);
+      CAPTURE(p, values.size());
+      CHECK(core::quantiles(values, std::array{0.2, p}).back() == expected);
+      CHECK(core::quantile(values, p) == expected);
+    }
+  };
+  SECTION("spread over decades") {
+    for (int i = 0; i < 20000; ++i) values.push_back(skewed(chance));
+    check();
+  }
+  SECTION("two far apart") {
+    values.assign(5000, -3.0);
+    values.insert(values.end(), 4999, 1e9);
+    check();
+  }
+  SECTION("all the same") {
+    values.assign(10000, 0.125);
+    check();
+  }
+  SECTION("one that is infinite") {
+    for (int i = 0; i < 20000; ++i) values.push_back(skewed(chance));
+    values.push_back(std::numeric_limits<double>::infinity());
+    std::vector<double> sorted = values;
+    std::ranges::sort(sorted);
+    CHECK(core::quantile(values, 0.5) == sorted[10000]);
+  }
 }

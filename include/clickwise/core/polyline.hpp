@@ -35,6 +35,7 @@ class Polyline {
 
   std::vector<double> x_;
   std::vector<double> y_;
+  std::vector<double> slope_;     // of each piece
   std::vector<double> integral_;  // at each point
 };
 

@@ -1,6 +1,7 @@
 // Summary statistics that the whole program shares.
 #pragma once
 
+#include <span>
 #include <vector>
 
 namespace clickwise::core {
@@ -9,6 +10,9 @@ namespace clickwise::core {
 // and NumPy, type 7 of Hyndman and Fan, The American Statistician 50:361-365, 1996). NaN when
 // empty. Values must not be NaN. O(n).
 double quantile(std::vector<double> values, double p);
+
+// Several of the same values, which stay where they are.
+std::vector<double> quantiles(std::span<const double> values, std::span<const double> p);
 
 double median(std::vector<double> values);
 

@@ -32,6 +32,7 @@ struct ReadingFaultOptions {
 
 struct ReadingFaults {
   std::vector<std::uint8_t> usable;  // one per sample; 0: missing or masked by a fault
+  std::vector<double> travel_m;      // of each sample, masked or not; NaN where missing
   run::FaultLedger faults;           // stuck, saturated, spike, missing (an open input's noise)
 };
 
