@@ -1,5 +1,6 @@
 #include <memory>
 
+#include "clickwise/report/damper_svg.hpp"
 #include "clickwise/report/damper_text.hpp"
 #include "clickwise/workflow/damper_table.hpp"
 #include "command.hpp"
@@ -18,7 +19,9 @@ void run_damper(const Common& common, const Arguments& arguments) {
   print(common, arguments.output, report::damper_text(result));
   const std::string json = report::damper_json(result);
   write_json(arguments.output, json);
-  if (!arguments.output.folder.empty()) write_into(arguments.output.folder, "damper.json", json);
+  if (arguments.output.folder.empty()) return;
+  write_into(arguments.output.folder, "damper.json", json);
+  write_into(arguments.output.folder, "damper.svg", report::damper_svg(result));
 }
 
 }  // namespace
@@ -28,7 +31,7 @@ void add_damper(CLI::App& app, Common& common) {
   CLI::App* command = add_command(app, common, "damper",
                                   "The damper's curve, and what each click changes at each speed");
   command->add_option("BIKE.toml", arguments->bike_path, "the bike file")->required();
-  add_output(*command, arguments->output, "damper.json");
+  add_output(*command, arguments->output, "damper.json and damper.svg");
   command->callback([&common, arguments] { run_damper(common, *arguments); });
 }
 

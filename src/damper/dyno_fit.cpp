@@ -128,8 +128,7 @@ void note_one_setting(Adjuster adjuster, SideFit& fit) {
 // An adjuster that was turned, and nothing came of it.
 void note_no_effect(Adjuster adjuster, SideFit& fit) {
   fit.notes.push_back(
-      fmt::format("the points show no effect of {}, or the reverse of one: check that its column "
-                  "counts clicks out from closed",
+      fmt::format("the points show no effect of {}: check that its column holds what was set",
                   bike::words(adjuster)));
 }
 
@@ -218,14 +217,43 @@ void take_residuals(const Direction& direction, const FittedSide& side, SideFit&
   if (!errors.empty()) fit.curve_error_share = core::median(std::move(errors));
 }
 
-void note_quality(const DynoFitOptions& options, SideFit& fit) {
-  if (fit.rms_share > poor_rms_over_noise * options.noise_share)
+double typical_sigmas(const FittedSide& side) {
+  std::vector<double> sizes;
+  for (std::size_t i = 0; i < side.residual_n.size(); ++i)
+    sizes.push_back(std::abs(side.residual_n[i]) / side.sigma_n[i]);
+  return core::median(std::move(sizes));
+}
+
+// Whether the points lie much nearer to a law that takes an adjuster's clicks the other way round.
+void note_reversed(Direction direction, double SidePoint::*out, Adjuster adjuster,
+                   double typical_now, const DynoFitOptions& options, SideFit& fit) {
+  constexpr double much_nearer = 0.5;
+  for (SidePoint& point : direction.points) point.*out = 1.0 - point.*out;
+  if (typical_sigmas(fit_side(direction.points, options)) > much_nearer * typical_now) return;
+  fit.notes.push_back(
+      fmt::format("{} looks counted the wrong way round: its column must count clicks out from "
+                  "closed (0 = firmest)",
+                  bike::words(adjuster)));
+}
+
+void note_quality(const Direction& direction, const FittedSide& side, const DynoFitOptions& options,
+                  SideFit& fit) {
+  const bool poor = fit.rms_share > poor_rms_over_noise * options.noise_share;
+  const bool many =
+      static_cast<double>(fit.misfits.size()) > many_misfits * static_cast<double>(fit.points);
+  if (poor)
     fit.notes.push_back(
         fmt::format("the law misses these points by {:.0f} % of the force: they scatter, or the "
                     "damper does not flow as the law says (friction, cavitation, heat, gas force)",
                     100.0 * fit.rms_share));
-  if (static_cast<double>(fit.misfits.size()) > many_misfits * static_cast<double>(fit.points))
+  if (many)
     fit.notes.push_back("many points do not fit: check that their settings are written right");
+  if (!poor && !many) return;
+  const double now = typical_sigmas(side);
+  if (side.layout.bleed_span >= 0)
+    note_reversed(direction, &SidePoint::bleed_out, direction.bleed_name(), now, options, fit);
+  if (side.layout.valve_span >= 0)
+    note_reversed(direction, &SidePoint::valve_out, direction.valve_name(), now, options, fit);
 }
 
 SideFit fit_direction(const Direction& direction, const DynoFitOptions& options,
@@ -246,7 +274,7 @@ SideFit fit_direction(const Direction& direction, const DynoFitOptions& options,
   fit.reason = side.found.reason;
   law = lay_out(direction, side, options, fit);
   take_residuals(direction, side, fit);
-  note_quality(options, fit);
+  note_quality(direction, side, options, fit);
   return fit;
 }
 

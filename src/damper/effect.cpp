@@ -1,5 +1,7 @@
 #include "clickwise/damper/effect.hpp"
 
+#include <set>
+
 namespace clickwise::damper {
 
 namespace {
@@ -42,6 +44,23 @@ EffectTable effect_table(const Damper& damper, const std::vector<double>& speeds
     table.clicks.push_back({range, change(damper, range, range.setting - 1, speeds_m_s),
                             change(damper, range, range.setting + 1, speeds_m_s)});
   return table;
+}
+
+std::vector<Family> families(const Damper& damper, const std::vector<double>& speeds_m_s) {
+  std::vector<Family> all;
+  for (const AdjusterRange& range : damper.adjusters()) {
+    std::set<int> settings{range.setting};
+    for (int quarter = 0; quarter <= 4; ++quarter)
+      settings.insert((range.clicks * quarter + 2) / 4);
+    Family family{range, {}};
+    for (const int setting : settings) {
+      const Curve curve = damper.curve_with(range.adjuster, setting);
+      family.curves.push_back(
+          {setting, setting == range.setting, forces(side(curve, range.adjuster), speeds_m_s)});
+    }
+    all.push_back(std::move(family));
+  }
+  return all;
 }
 
 std::vector<double> usual_speeds_m_s() {

@@ -16,9 +16,6 @@ using Eigen::VectorXd;
 constexpr double infinite = std::numeric_limits<double>::infinity();
 constexpr double robust_knee_sigmas = 2.0;
 constexpr double deviations_per_median = 1.4826;  // of a normal distribution
-// Where the points are cleaner than this part of what they are said to be, none is called a misfit
-// for the last digits.
-constexpr double least_scale = 0.05;
 constexpr int most_rounds = 8;
 // A port that no point tells: a hundredth of the force at this speed; common practice, no source.
 constexpr double plausible_port_share = 0.01;
@@ -63,32 +60,39 @@ LeastSquaresSummary best_of_starts(const std::vector<SidePoint>& points, const S
   return best;
 }
 
-// Robust scale of residuals in sigmas, apart for points that the noise's floor rules and those that
-// its share rules: where one of the two was guessed wrongly, the others keep their own scale.
-double scale_of(const std::vector<double>& sizes, double least) {
-  constexpr std::size_t enough = 8;
-  return sizes.size() < enough ? least
-                               : std::max(least, deviations_per_median * core::median(sizes));
+// Robust scale of residuals in sigmas. The noise as it was said counts like ten more points, so
+// that few points, which the law can follow closely, do not make their neighbours misfits.
+double scale_of(const std::vector<double>& sizes, double parameters) {
+  constexpr double said_counts = 10.0;
+  if (sizes.empty()) return 1.0;
+  const double count = static_cast<double>(sizes.size());
+  const double freedom = std::max(1.0, count - parameters);
+  const double seen = deviations_per_median * core::median(sizes);
+  return std::sqrt((count * seen * seen + said_counts) / (freedom + said_counts));
 }
 
+// The scale is taken apart for points that the noise's floor rules and those that its share rules:
+// where one of the two was guessed wrongly, the others keep their own scale.
 void take_residuals(const std::vector<SidePoint>& points, const DynoFitOptions& options,
                     FittedSide& side) {
   const double floor_rules_below_n = options.noise_floor_n / options.noise_share;
-  std::vector<double> all, large;
+  std::vector<double> large_sizes, small_sizes;
   std::vector<bool> small;
-  std::vector<double> small_sizes;
   for (std::size_t i = 0; i < points.size(); ++i) {
     const double force_n =
         side.layout.law(side.found.parameters, points[i]).force_n(points[i].speed_m_s);
     side.residual_n[i] = force_n - points[i].force_n;
     side.sigma_n[i] = noise_n(force_n, options);
     small.push_back(force_n < floor_rules_below_n);
-    all.push_back(std::abs(side.residual_n[i]) / side.sigma_n[i]);
-    (small.back() ? small_sizes : large).push_back(all.back());
+    (small.back() ? small_sizes : large_sizes)
+        .push_back(std::abs(side.residual_n[i]) / side.sigma_n[i]);
   }
-  const double whole = scale_of(all, least_scale);
-  const double of_large = large.size() < small_sizes.size() ? whole : scale_of(large, least_scale);
-  const double of_small = scale_of(small_sizes, of_large);
+  const auto parameters = static_cast<double>(side.layout.size);
+  const double large_share =
+      static_cast<double>(large_sizes.size()) / static_cast<double>(points.size());
+  const double of_large = scale_of(large_sizes, parameters * large_share);
+  const double of_small =
+      std::max(of_large, scale_of(small_sizes, parameters * (1.0 - large_share)));
   for (std::size_t i = 0; i < points.size(); ++i) side.scale[i] = small[i] ? of_small : of_large;
 }
 

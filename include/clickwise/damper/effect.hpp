@@ -27,6 +27,22 @@ struct EffectTable {
   bool assumed = false;
 };
 
+// The curve with an adjuster at one setting and the others as they are.
+struct FamilyCurve {
+  int setting = 0;
+  bool present = false;         // it is there now
+  std::vector<double> force_n;  // magnitudes in the adjuster's own direction, one per speed
+};
+
+// The curves across one adjuster: closed, open, three in between, and the present one.
+struct Family {
+  AdjusterRange range;
+  std::vector<FamilyCurve> curves;  // closed first
+};
+
+// One family for each adjuster that the damper has; speeds are magnitudes >= 0 in m/s.
+std::vector<Family> families(const Damper& damper, const std::vector<double>& speeds_m_s);
+
 // At the damper's present settings; speeds are magnitudes >= 0 in m/s.
 EffectTable effect_table(const Damper& damper, const std::vector<double>& speeds_m_s);
 
