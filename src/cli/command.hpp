@@ -46,5 +46,6 @@ void add_review(CLI::App& app, Common& common);
 void add_inspect(CLI::App& app, Common& common);
 void add_simulate(CLI::App& app, Common& common);
 void add_damper(CLI::App& app, Common& common);
+void add_replay(CLI::App& app, Common& common);
 
 }  // namespace clickwise::cli

@@ -64,6 +64,7 @@ int run(int argc, const char* const* argv) {
   add_inspect(app, common);
   add_simulate(app, common);
   add_damper(app, common);
+  add_replay(app, common);
   try {
     refuse_unknown_command(app, argc, argv);
     app.parse(argc, argv);

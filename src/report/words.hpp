@@ -5,6 +5,7 @@
 #include <vector>
 
 #include "clickwise/advice/advise.hpp"
+#include "clickwise/sim/replay.hpp"
 #include "clickwise/workflow/review.hpp"
 
 namespace clickwise::report {
@@ -21,7 +22,8 @@ std::string step_words(const advice::Step& step);
 // "0.93: likely" and the like
 std::string confidence_words(double confidence);
 
-// "bottom-outs 4 to 1 (0 to 3); mean travel 39.7 to 40.9 mm (40.2 to 41.0); in brackets: 90 % bounds"
+// "bottom-outs 4 to 1 (0 to 3); mean travel 39.7 to 40.9 mm (40.2 to 41.0); in brackets: 90 %
+// bounds"
 std::string predictions_words(const std::vector<advice::Prediction>& predictions);
 
 // "packs down 3.1 mm per hit (aim 2)"
@@ -32,5 +34,8 @@ std::string split_source_words(workflow::SplitSource source);
 
 // One sentence a fault: "gap: 2 on the clock, 1.2 s left out; ..."
 std::vector<std::string> fault_words(const run::FaultLedger& faults);
+
+// The unit of a metric's name over SI: 1000 for "..._mm" and "..._mm_s".
+double metric_scale(sim::Metric metric);
 
 }  // namespace clickwise::report

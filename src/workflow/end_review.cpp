@@ -16,11 +16,6 @@ constexpr double fallback_split_m_s = 0.5;
 constexpr double least_knee_m_s = 0.05;
 constexpr double most_knee_m_s = 3.0;
 
-struct ChosenSplit {
-  double speed_m_s;
-  SplitSource source;
-};
-
 ChosenSplit choose_split(const std::optional<double>& asked, const std::optional<double>& in_file,
                          const std::optional<double>& knee_m_s) {
   if (asked) return {*asked, SplitSource::asked};
@@ -60,6 +55,18 @@ std::optional<damper::Damper> damper_of(const bike::Bike& bike, bike::EndName na
   return damper::Damper::from(*bike.end(name), bike.sprung_mass_kg(name), {bike.file});
 }
 
+ChosenSplits choose_splits(const bike::End& end, const bike::Split& asked,
+                           const std::optional<damper::Damper>& damper) {
+  std::optional<double> compression_knee;
+  std::optional<double> rebound_knee;
+  if (damper) {
+    compression_knee = damper->curve().compression.knee_m_s();
+    rebound_knee = damper->curve().rebound.knee_m_s();
+  }
+  return {choose_split(asked.compression_m_s, end.split.compression_m_s, compression_knee),
+          choose_split(asked.rebound_m_s, end.split.rebound_m_s, rebound_knee)};
+}
+
 std::optional<sim::VehicleEnd> vehicle_of(const bike::Bike& bike, bike::EndName name) {
   try {
     return sim::VehicleEnd::from(bike, name);
@@ -72,18 +79,12 @@ EndReview review_end(const bike::Bike& bike, const RideEnd& ride, const bike::Sp
                      const std::optional<damper::Damper>& damper) {
   const bike::End& end = *bike.end(ride.name);
   const run::Motion& motion = ride.motion;
-  std::optional<double> compression_knee;
-  std::optional<double> rebound_knee;
   bands::ForceCurve force_n;
-  if (damper) {
-    const damper::Curve curve = damper->curve();
-    compression_knee = curve.compression.knee_m_s();
-    rebound_knee = curve.rebound.knee_m_s();
-    force_n = [curve](double velocity_m_s) { return curve.force_n(velocity_m_s); };
-  }
-  const ChosenSplit compression =
-      choose_split(asked.compression_m_s, end.split.compression_m_s, compression_knee);
-  const ChosenSplit rebound = choose_split(asked.rebound_m_s, end.split.rebound_m_s, rebound_knee);
+  if (damper)
+    force_n = [curve = damper->curve()](double velocity_m_s) {
+      return curve.force_n(velocity_m_s);
+    };
+  const auto [compression, rebound] = choose_splits(end, asked, damper);
 
   EndReview review;
   review.name = ride.name;

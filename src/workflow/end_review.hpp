@@ -12,6 +12,21 @@ namespace clickwise::workflow {
 // cannot be laid out.
 std::optional<damper::Damper> damper_of(const bike::Bike& bike, bike::EndName name);
 
+struct ChosenSplit {
+  double speed_m_s;
+  SplitSource source;
+};
+
+struct ChosenSplits {
+  ChosenSplit compression;
+  ChosenSplit rebound;
+};
+
+// What was asked for, else what the bike file says, else the knee of the damper's curve, else a
+// default.
+ChosenSplits choose_splits(const bike::End& end, const bike::Split& asked,
+                           const std::optional<damper::Damper>& damper);
+
 // The end as the replay needs it; empty when the bike file knows too little.
 std::optional<sim::VehicleEnd> vehicle_of(const bike::Bike& bike, bike::EndName name);
 
