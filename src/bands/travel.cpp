@@ -3,7 +3,6 @@
 #include <fmt/format.h>
 
 #include <algorithm>
-#include <array>
 #include <cmath>
 #include <numeric>
 #include <stdexcept>
@@ -81,9 +80,8 @@ TravelUse travel_use(std::span<const double> travel_m, std::span<const std::uint
   use.mean_m =
       std::accumulate(values.begin(), values.end(), 0.0) / static_cast<double>(values.size());
   use.max_m = *std::ranges::max_element(values);
-  const auto quantiles = core::quantiles(values, std::array{0.50, 0.95});
-  use.p50_m = quantiles[0];
-  use.p95_m = quantiles[1];
+  use.p50_m = core::quantile_of(values, 0.50);
+  use.p95_m = core::quantile_of(values, 0.95);
   return use;
 }
 

@@ -7,6 +7,7 @@
 #include <numeric>
 #include <stdexcept>
 
+#include "clickwise/core/statistics.hpp"
 #include "force_table.hpp"
 #include "speed_axis.hpp"
 
@@ -77,33 +78,6 @@ double high(const std::vector<double>& values, std::size_t first_high) {
                          0.0);
 }
 
-// Type-7 quantile of the speeds, not empty. The counts of the bins say which bins hold the order
-// statistics, so only those are sorted.
-double quantile(const std::vector<double>& speeds, const SpeedHistogram& histogram,
-                double interval_s, double p) {
-  const double place = p * static_cast<double>(speeds.size() - 1);
-  const double below = std::floor(place);
-  std::size_t first = 0;
-  double before = 0.0;  // speeds in bins ahead of `first`
-  const auto count = [&](std::size_t bin) {
-    return std::round(histogram.seconds[bin] / interval_s);
-  };
-  while (before + count(first) <= below) before += count(first++);
-  std::size_t last = first;
-  for (double passed = before + count(first);
-       passed <= below + 1.0 && last + 1 < histogram.seconds.size();)
-    passed += count(++last);
-  const double low = first == 0 ? -1.0 : histogram.edges_m_s[first];
-  const double high = histogram.edges_m_s[last + 1];
-  std::vector<double> near;
-  for (const double speed : speeds)
-    if (speed > low && speed <= high) near.push_back(speed);
-  std::ranges::sort(near);
-  const auto i = static_cast<std::size_t>(below - before);
-  const double next = i + 1 < near.size() ? near[i + 1] : near[i];
-  return near[i] + (place - below) * (next - near[i]);
-}
-
 struct Direction {
   SpeedHistogram histogram;
   Band band;
@@ -132,8 +106,8 @@ Direction direction(const std::vector<double>& speeds, double sign, double split
   if (table) band.high_j = high(histogram.joules, cut);
   if (speeds.empty()) return result;
   band.max_m_s = fastest;
-  band.p50_m_s = quantile(speeds, histogram, interval_s, 0.50);
-  band.p95_m_s = quantile(speeds, histogram, interval_s, 0.95);
+  band.p50_m_s = core::quantile_of(speeds, 0.50);
+  band.p95_m_s = core::quantile_of(speeds, 0.95);
   return result;
 }
 

@@ -1,17 +1,17 @@
 #include "clickwise/core/statistics.hpp"
 
 #include <algorithm>
-#include <array>
 #include <cmath>
-#include <cstdint>
 #include <limits>
+#include <optional>
 
 namespace clickwise::core {
 
 namespace {
 
 constexpr double not_known = std::numeric_limits<double>::quiet_NaN();
-constexpr std::size_t worth_counting = 4096;
+constexpr std::size_t sampled_every = 64;
+constexpr std::size_t worth_sampling = 64 * sampled_every;
 
 // Where a quantile lies between order statistics, counted from 0.
 struct Place {
@@ -33,72 +33,61 @@ double between_neighbours(std::vector<double>& values, const Place& place) {
   return *below + place.part * (high - *below);
 }
 
-// Even cells over the values' range: their counts say which ones hold an order statistic, so that
-// only those need sorting.
-class Cells {
-public:
-  explicit Cells(std::span<const double> values) : values_(values), least_(values.front()) {
-    double most = least_;
-    for (const double value : values) {
-      least_ = std::min(least_, value);
-      most = std::max(most, value);
-    }
-    cells_per_unit_ = static_cast<double>(counts_.size() - 1) / (most - least_);
-    if (!usable()) return;
-    for (const double value : values) ++counts_[cell(value)];
-  }
-
-  bool usable() const { return std::isfinite(cells_per_unit_) && cells_per_unit_ > 0.0; }
-
-  double at(const Place& place) const {
-    std::size_t first = 0, before = 0;
-    while (before + counts_[first] <= place.below) before += counts_[first++];
-    std::size_t last = first;
-    const std::size_t wanted = place.below + (place.part > 0.0 ? 1 : 0);
-    for (std::size_t passed = before + counts_[first]; passed <= wanted;) passed += counts_[++last];
-    std::vector<double> near;
-    near.reserve(counts_[first] + counts_[last]);
-    for (const double value : values_)
-      if (cell(value) - first <= last - first) near.push_back(value);
-    return between_neighbours(near, {place.below - before, place.part});
-  }
-
-private:
-  std::size_t cell(double value) const {
-    return static_cast<std::size_t>(static_cast<std::int64_t>((value - least_) * cells_per_unit_));
-  }
-
-  std::span<const double> values_;
-  double least_;
-  double cells_per_unit_ = 0.0;
-  std::array<std::size_t, 2048> counts_{};
+// Two values that the wanted order statistics lie between, most probably: order statistics of every
+// so many values, five deviations of a sample's rank away on either side.
+struct Bracket {
+  double low, high;
 };
+
+Bracket bracket(std::span<const double> values, const Place& place) {
+  std::vector<double> sample;
+  sample.reserve(values.size() / sampled_every + 1);
+  for (std::size_t i = 0; i < values.size(); i += sampled_every) sample.push_back(values[i]);
+  const auto n = static_cast<double>(sample.size());
+  const double share = static_cast<double>(place.below) / static_cast<double>(values.size());
+  const double margin = 5.0 * std::sqrt(n * share * (1.0 - share)) + 5.0;
+  const auto ranked = [&](double rank) {
+    if (rank < 0.0) return -std::numeric_limits<double>::infinity();
+    if (rank >= n) return std::numeric_limits<double>::infinity();
+    const auto wanted = sample.begin() + static_cast<std::ptrdiff_t>(rank);
+    std::nth_element(sample.begin(), wanted, sample.end());
+    return *wanted;
+  };
+  return {ranked(n * share - margin), ranked(n * share + margin)};
+}
+
+// Only the values inside the bracket need sorting (R. W. Floyd and R. L. Rivest, Communications of
+// the ACM 18:165-172, 1975); empty where the bracket misses the place.
+std::optional<double> bracketed(std::span<const double> values, const Place& place) {
+  const Bracket within = bracket(values, place);
+  std::size_t under = 0;
+  std::vector<double> near;
+  for (const double value : values) {
+    under += value < within.low;
+    if (value >= within.low && value <= within.high) near.push_back(value);
+  }
+  if (place.below < under || place.below + 1 - under >= near.size()) return std::nullopt;
+  return between_neighbours(near, {place.below - under, place.part});
+}
+
+double quantile_of_many(std::span<const double> values, double p) {
+  const Place place = place_of(p, values.size());
+  if (const auto found = bracketed(values, place)) return *found;
+  std::vector<double> copy(values.begin(), values.end());
+  return between_neighbours(copy, place);
+}
 
 }  // namespace
 
-std::vector<double> quantiles(std::span<const double> values, std::span<const double> p) {
-  std::vector<double> found;
-  if (values.empty()) {
-    found.assign(p.size(), not_known);
-    return found;
-  }
-  const auto at = [&](double q) { return place_of(q, values.size()); };
-  if (values.size() >= worth_counting) {
-    const Cells cells(values);
-    if (cells.usable()) {
-      for (const double q : p) found.push_back(cells.at(at(q)));
-      return found;
-    }
-  }
-  std::vector<double> copy(values.begin(), values.end());
-  for (const double q : p) found.push_back(between_neighbours(copy, at(q)));
-  return found;
+double quantile_of(std::span<const double> values, double p) {
+  if (values.size() >= worth_sampling) return quantile_of_many(values, p);
+  return quantile({values.begin(), values.end()}, p);
 }
 
 double quantile(std::vector<double> values, double p) {
-  if (values.size() < worth_counting && !values.empty())
-    return between_neighbours(values, place_of(p, values.size()));
-  return quantiles(values, {&p, 1}).front();
+  if (values.empty()) return not_known;
+  if (values.size() >= worth_sampling) return quantile_of_many(values, p);
+  return between_neighbours(values, place_of(p, values.size()));
 }
 
 double median(std::vector<double> values) {

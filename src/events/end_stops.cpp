@@ -7,6 +7,7 @@
 #include <limits>
 #include <optional>
 #include <stdexcept>
+#include <utility>
 
 #include "hermite.hpp"
 
@@ -39,9 +40,11 @@ public:
       : motion_(motion), counted_(counted), line_(line) {}
 
   std::vector<run::EndStop> find() {
+    bool usable_before = false;
     for (std::size_t i = 0; i < counted_.size(); ++i) {
-      if (!usable(i)) continue;
-      if (i > 0 && usable(i - 1))
+      const bool follows = std::exchange(usable_before, usable(i));
+      if (!usable_before) continue;
+      if (follows)
         between(i - 1);
       else if (x(i) >= line_.level_m)
         armed_ = false;  // the crossing was not seen
@@ -60,7 +63,8 @@ private:
 
   void between(std::size_t i) {
     const bool turns = v(i) > 0.0 && v(i + 1) < 0.0;
-    if (x(i + 1) < line_.level_m && !turns) return;
+    const bool reaches = x(i + 1) >= line_.level_m || (turns && may_reach(i));
+    if (!(armed_ && reaches) && !(open_ && turns)) return;
     const double interval_s = motion_.time.interval_s();
     const Hermite curve(x(i), v(i), x(i + 1), v(i + 1), interval_s);
     if (armed_ && x(i) < line_.level_m) {
@@ -68,6 +72,12 @@ private:
       if (s) cross(motion_.time.at(i) + *s * interval_s, curve.slope(*s));
     }
     if (turns) deepen(curve.value(curve.highest()));
+  }
+
+  // A turn's cubic stays below this: its weights of the velocities are 4/27 at most.
+  bool may_reach(std::size_t i) const {
+    const double rise_m = 4.0 / 27.0 * motion_.time.interval_s() * (v(i) - v(i + 1));
+    return std::max(x(i), x(i + 1)) + rise_m >= line_.level_m;
   }
 
   void at(std::size_t i) {

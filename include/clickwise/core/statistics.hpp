@@ -11,8 +11,8 @@ namespace clickwise::core {
 // empty. Values must not be NaN. O(n).
 double quantile(std::vector<double> values, double p);
 
-// Several of the same values, which stay where they are.
-std::vector<double> quantiles(std::span<const double> values, std::span<const double> p);
+// The same of values that stay where they are.
+double quantile_of(std::span<const double> values, double p);
 
 double median(std::vector<double> values);
 
