@@ -25,12 +25,12 @@ bool any_crossed(const std::vector<Symptom>& measured) {
                      [](const Symptom& symptom) { return symptom.severity > 0.0; });
 }
 
-// By replay where the bike file knows enough, by rule otherwise. A ride too broken to replay is
-// judged by rule as well.
+// By replay where that is asked for and the bike file knows enough, by rule otherwise. A ride too
+// broken to replay is judged by rule as well.
 EndChoice choose(const EndRide& ride, const std::vector<Symptom>& measured,
                  const std::vector<Symptom>& crossed, const AdviceOptions& options) {
   if (!any_crossed(measured)) return {};
-  if (ride.vehicle && ride.damper) {
+  if (options.by_replay && ride.vehicle && ride.damper) {
     try {
       return choose_by_replay(ride, measured, options);
     } catch (const core::JobError&) {

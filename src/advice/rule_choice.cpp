@@ -17,6 +17,8 @@ namespace {
 constexpr double window_before_event_s = 0.3;
 constexpr double least_share_per_click =
     0.01;  // of the damper's work: below it a click is not felt
+// A rule of thumb is never certain, and less so on a curve that nobody measured.
+constexpr double rule_confidence = 0.9;
 constexpr double assumed_curve_confidence = 0.75;
 
 std::vector<Window> before(const std::vector<run::EndStop>& stops) {
@@ -176,7 +178,8 @@ Step step_for(const Symptom& symptom, const EndRide& ride, const Candidate& cand
   step.to = target_setting(candidate, clicks);
   step.symptom = symptom;
   step.why = why(symptom, ride, candidate);
-  step.confidence = symptom.certainty() * (ride.damper->assumed() ? assumed_curve_confidence : 1.0);
+  step.confidence =
+      symptom.certainty() * (ride.damper->assumed() ? assumed_curve_confidence : rule_confidence);
   if (symptom.kind == SymptomKind::hard_bottoming && ride.sprung_mass_kg)
     step.predicted.push_back(
         predicted_bottom_outs(ride, remaining_bottom_outs(ride, candidate.move, step.to)));

@@ -62,7 +62,9 @@ Review review(const ReviewOptions& options) {
     views.back().bike = &ride.bike;
     views.back().vehicle = vehicle_of(ride.bike, ride.ends[i].name);
   }
-  result.advice = advice::advise(views, ride.bike.aims);
+  advice::AdviceOptions advice_options;
+  advice_options.by_replay = options.advice_by_replay;
+  result.advice = advice::advise(views, ride.bike.aims, advice_options);
   result.missing = bike::what_is_missing(ride.bike);
   return result;
 }

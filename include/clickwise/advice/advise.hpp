@@ -48,6 +48,7 @@ struct Advice {
 struct AdviceOptions {
   double least_confidence = 0.7;  // below it the advice is to leave it
   int most_clicks = 3;            // 1 to 3
+  bool by_replay = false;         // ride the moves over the ride's own ground; some seconds more
   unsigned seed = 20240607u;      // of the block bootstrap
 };
 

@@ -63,6 +63,7 @@ struct Review {
 struct ReviewOptions {
   RideOptions ride;
   SplitRequest splits;
+  bool advice_by_replay = false;  // advice::AdviceOptions::by_replay
 };
 
 // Throws what load_ride throws.
