@@ -5,6 +5,7 @@
 #include <algorithm>
 #include <array>
 #include <cmath>
+#include <numeric>
 
 #include "clickwise/core/units.hpp"
 #include "words.hpp"
@@ -77,7 +78,8 @@ public:
       svg += line(x(0.0), y(n), x(most_m_s_), y(n), n == 0.0);
       svg += text_at(x(0.0) - 6.0, y(n) + 4.0, "end", fmt::format("{:g}", n));
     }
-    for (double v = 0.0; v < most_m_s_ + 0.25; v += 0.5) {
+    const double step_m_s = tick_step(most_m_s_);
+    for (double v = 0.0; v < most_m_s_ + 0.5 * step_m_s; v += step_m_s) {
       svg += line(x(v), y(0.0), x(v), y(most_n_), v == 0.0);
       svg += text_at(x(v), y(0.0) + 16.0, "middle", fmt::format("{:.0f}", core::to_mm(v)));
     }
@@ -99,14 +101,19 @@ private:
   double most_n_ = 0.0;
 };
 
-// Heights of the labels beside the lines' ends, apart by at least their own height, top first.
+// Heights of the labels beside the lines' ends, apart by at least their own height, about the same
+// middle.
 std::vector<double> spread_out(std::vector<double> heights) {
+  const auto sum = [&] { return std::accumulate(heights.begin(), heights.end(), 0.0); };
+  const double before = sum();
   std::vector<std::size_t> order(heights.size());
   for (std::size_t i = 0; i < order.size(); ++i) order[i] = i;
   std::sort(order.begin(), order.end(),
             [&](std::size_t a, std::size_t b) { return heights[a] > heights[b]; });
   for (std::size_t k = 1; k < order.size(); ++k)
     heights[order[k]] = std::min(heights[order[k]], heights[order[k - 1]] - label_height);
+  const double lower = (before - sum()) / static_cast<double>(heights.size());
+  for (double& height : heights) height += lower;
   return heights;
 }
 
@@ -122,8 +129,19 @@ std::string polyline(const Plane& plane, const std::vector<double>& speed_m_s,
       curve.present ? "3" : "1.4", curve.present ? "none" : dashes[which % dashes.size()], points);
 }
 
-std::string panel(const damper::Family& family, bike::EndName end,
-                  const std::vector<double>& speed_m_s, double x, double y) {
+// A bleed shows at low speed; there its panel ends.
+damper::Family shown_part(damper::Family family, std::vector<double>& speed_m_s) {
+  constexpr double most_bleed_m_s = 1.0;
+  if (!bike::is_bleed(family.range.adjuster)) return family;
+  const auto end = std::upper_bound(speed_m_s.begin(), speed_m_s.end(), most_bleed_m_s + 1e-9);
+  speed_m_s.erase(end, speed_m_s.end());
+  for (auto& curve : family.curves) curve.force_n.resize(speed_m_s.size());
+  return family;
+}
+
+std::string panel(const damper::Family& whole, bike::EndName end, std::vector<double> speed_m_s,
+                  double x, double y) {
+  const damper::Family family = shown_part(whole, speed_m_s);
   double most_n = 1.0;
   for (const auto& curve : family.curves)
     most_n = std::max(most_n, *std::max_element(curve.force_n.begin(), curve.force_n.end()));
