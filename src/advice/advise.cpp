@@ -74,7 +74,7 @@ Advice advise(const std::vector<EndRide>& rides, const bike::Aims& aims,
               const AdviceOptions& options) {
   Advice advice;
   const std::vector<Symptom> measured = measure_symptoms(rides, aims, options.seed);
-  advice.symptoms = find_symptoms(rides, aims, options.seed);
+  advice.symptoms = find_symptoms(measured);
   for (const EndRide& ride : rides) {
     EndChoice choice =
         choose(ride, of_end(measured, ride.name), of_end(advice.symptoms, ride.name), options);

@@ -8,6 +8,7 @@
 
 #include "blocks.hpp"
 #include "clickwise/bike/spring.hpp"
+#include "clickwise/core/parallel.hpp"
 #include "clickwise/core/statistics.hpp"
 #include "clickwise/core/units.hpp"
 
@@ -233,24 +234,30 @@ std::optional<double> body_damping_ratio(const EndRide& ride, const damper::Curv
 
 std::vector<Symptom> measure_symptoms(const std::vector<EndRide>& rides, const bike::Aims& aims,
                                       unsigned seed) {
+  std::vector<std::vector<Symptom>> of_ends(rides.size());
+  core::parallel_for(rides.size(), [&](std::size_t i) {
+    const Evidence evidence(rides[i]);
+    if (evidence.riding_s < least_riding_s) return;
+    measure_travel(evidence, aims, seed, of_ends[i]);
+    measure_events(evidence, aims, seed, of_ends[i]);
+    measure_damper(evidence, aims, seed, of_ends[i]);
+  });
   std::vector<Symptom> symptoms;
-  for (const EndRide& ride : rides) {
-    const Evidence evidence(ride);
-    if (evidence.riding_s < least_riding_s) continue;
-    measure_travel(evidence, aims, seed, symptoms);
-    measure_events(evidence, aims, seed, symptoms);
-    measure_damper(evidence, aims, seed, symptoms);
-  }
+  for (const std::vector<Symptom>& of_end : of_ends)
+    symptoms.insert(symptoms.end(), of_end.begin(), of_end.end());
   return symptoms;
+}
+
+std::vector<Symptom> find_symptoms(std::vector<Symptom> measured) {
+  std::erase_if(measured, [](const Symptom& symptom) { return symptom.severity <= 0.0; });
+  std::stable_sort(measured.begin(), measured.end(),
+                   [](const Symptom& a, const Symptom& b) { return a.severity > b.severity; });
+  return measured;
 }
 
 std::vector<Symptom> find_symptoms(const std::vector<EndRide>& rides, const bike::Aims& aims,
                                    unsigned seed) {
-  std::vector<Symptom> symptoms = measure_symptoms(rides, aims, seed);
-  std::erase_if(symptoms, [](const Symptom& symptom) { return symptom.severity <= 0.0; });
-  std::stable_sort(symptoms.begin(), symptoms.end(),
-                   [](const Symptom& a, const Symptom& b) { return a.severity > b.severity; });
-  return symptoms;
+  return find_symptoms(measure_symptoms(rides, aims, seed));
 }
 
 }  // namespace clickwise::advice

@@ -16,7 +16,10 @@ namespace clickwise::advice {
 std::vector<Symptom> measure_symptoms(const std::vector<EndRide>& rides, const bike::Aims& aims,
                                       unsigned seed);
 
-// Those of them that cross their aim, most severe first.
+// Those that cross their aim, most severe first.
+std::vector<Symptom> find_symptoms(std::vector<Symptom> measured);
+
+// The same of rides.
 std::vector<Symptom> find_symptoms(const std::vector<EndRide>& rides, const bike::Aims& aims,
                                    unsigned seed);
 
