@@ -14,7 +14,8 @@ configure() { # configure DIRECTORY OPTION...
 }
 
 mkdir -p build
-configure build/sanitize -DCMAKE_BUILD_TYPE=Debug -DCLICKWISE_SANITIZE=ON
+configure build/sanitize -DCMAKE_BUILD_TYPE=Debug -DCMAKE_CXX_FLAGS_DEBUG="-O1 -g1" \
+  -DCLICKWISE_SANITIZE=ON
 ninja -C build/sanitize --quiet
 (cd build/sanitize && ASAN_OPTIONS=detect_leaks=1 ctest --output-on-failure -j "$(nproc)" -LE plain_only)
 

@@ -3,6 +3,7 @@
 #include <fmt/format.h>
 
 #include <cstdio>
+#include <exception>
 #include <new>
 
 #include "clickwise/core/errors.hpp"
@@ -79,6 +80,10 @@ int run(int argc, const char* const* argv) {
     return complain(job_not_done,
                     "memory: there is not enough of it for this job; close other "
                     "programs or cut the log in two");
+  } catch (const std::exception& error) {
+    return complain(job_not_done,
+                    fmt::format("internal fault: {}; keep the log and the bike file, and report it",
+                                error.what()));
   }
 }
 
