@@ -157,11 +157,11 @@ void AdaptiveSmoother::widen_at_ends(std::span<double> sigma_m_s) const {
   }
 }
 
-// The continued series over a chunk and its margins.
-void AdaptiveSmoother::read_chunk(std::span<const double> readings_m,
-                                  const OddReflection& continued, std::size_t first,
-                                  std::vector<double>& out) const {
-  const auto begin = static_cast<std::ptrdiff_t>(first) - static_cast<std::ptrdiff_t>(margin_);
+namespace {
+
+// The continued series from reading `begin` on.
+void read_chunk(std::span<const double> readings_m, const OddReflection& continued,
+                std::ptrdiff_t begin, std::vector<double>& out) {
   const auto end = begin + static_cast<std::ptrdiff_t>(out.size());
   const auto inside_end = std::min(end, static_cast<std::ptrdiff_t>(readings_m.size()));
   auto place = out.begin();
@@ -170,6 +170,8 @@ void AdaptiveSmoother::read_chunk(std::span<const double> readings_m,
                     readings_m.begin() + inside_end, place);
   for (std::ptrdiff_t i = inside_end; i < end; ++i) *place++ = continued.at(i);
 }
+
+}  // namespace
 
 double AdaptiveSmoother::smooth(std::span<const double> readings_m,
                                 const SmoothedSeries& out) const {
@@ -180,16 +182,23 @@ double AdaptiveSmoother::smooth(std::span<const double> readings_m,
   const GainRule rule = gain_rule();
   PassRows rows;
   std::vector<double> open_gains;
+  const auto margin = static_cast<std::ptrdiff_t>(margin_);
+  Carried carried(continued.at(-margin));
+  std::size_t ahead = margin_;
   for (std::size_t first = 0; first < n; first += chunk_samples) {
     const std::size_t count = std::min(chunk_samples, n - first);
-    rows.resize(count + 2 * margin_);
-    read_chunk(readings_m, continued, first, rows.readings);
-    run_forward(bank, rows);
+    const std::size_t next = ahead + count - reach_;
+    rows.resize(ahead + count + margin_);
+    read_chunk(readings_m, continued,
+               static_cast<std::ptrdiff_t>(first) - static_cast<std::ptrdiff_t>(ahead),
+               rows.readings);
+    run_forward(bank, next, carried, rows);
     run_backward(bank, reach_, rate_hz_, rule.first_keep, rows);
-    find_gains(rule, reach_, rows);
+    find_gains(rule, reach_, next, carried, rows);
     combine(rule, reach_, rows,
-            {margin_, out.position_m.subspan(first, count), out.velocity_m_s.subspan(first, count),
+            {ahead, out.position_m.subspan(first, count), out.velocity_m_s.subspan(first, count),
              out.sigma_m_s.subspan(first, count), open_gains});
+    ahead = reach_;
   }
   widen_at_ends(out.sigma_m_s);
   return effective_cutoff_hz(core::median(std::move(open_gains)));

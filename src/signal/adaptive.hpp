@@ -7,7 +7,6 @@
 
 #include "adaptive_passes.hpp"
 #include "clickwise/signal/smoother.hpp"
-#include "reflection.hpp"
 #include "spline_bank.hpp"
 
 namespace clickwise::signal {
@@ -31,8 +30,6 @@ private:
   void find_variances();
   BankRows bank_rows() const;
   GainRule gain_rule() const;
-  void read_chunk(std::span<const double> readings_m, const OddReflection& continued,
-                  std::size_t first, std::vector<double>& out) const;
   void widen_at_ends(std::span<double> sigma_m_s) const;
   double effective_cutoff_hz(double open_gains) const;
 

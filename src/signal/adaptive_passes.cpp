@@ -11,20 +11,15 @@ namespace {
 
 constexpr float tiny = 1e-30F;  // keeps 0/0 of a silent channel at a gain of 0
 
-struct BankState {
-  Row u, w1, w2;
-
-  explicit BankState(const Row& start) : u(start), w1(start), w2(start) {}
-
-  [[gnu::always_inline]] void step(const BankRows& bank, const Row& value) {
-    for (std::size_t q = 0; q < quads; ++q) {
-      u[q] = bank.real_gain[q] * value[q] + bank.pole[q] * u[q];
-      const Quad w = bank.pair_gain[q] * u[q] + bank.second[q] * w2[q] + bank.first[q] * w1[q];
-      w2[q] = w1[q];
-      w1[q] = w;
-    }
+[[gnu::always_inline]] inline void step(const BankRows& bank, BankState& state, const Row& value) {
+  auto& [u, w1, w2] = state;
+  for (std::size_t q = 0; q < quads; ++q) {
+    u[q] = bank.real_gain[q] * value[q] + bank.pole[q] * u[q];
+    const Quad w = bank.pair_gain[q] * u[q] + bank.second[q] * w2[q] + bank.first[q] * w1[q];
+    w2[q] = w1[q];
+    w1[q] = w;
   }
-};
+}
 
 [[gnu::always_inline]] inline Row all(double value) {
   const Quad quad = Quad{} + value;
@@ -60,10 +55,11 @@ template <std::size_t reach>
 [[gnu::always_inline]] inline void run_backward_over(const BankRows& bank, double rate_hz,
                                                      const FloatRow& keep, PassRows& rows) {
   const std::size_t n = rows.readings.size();
-  BankState state(rows.travel[n - 1]);
+  const Row start = rows.travel[n - 1];
+  BankState state{start, start, start};
   FloatRow power{};
   for (std::size_t i = n; i-- > 0;) {
-    state.step(bank, rows.travel[i]);
+    step(bank, state, rows.travel[i]);
     rows.travel[i] = state.w1;
     const std::size_t centre = i + reach;
     if (centre + reach >= n) continue;
@@ -87,11 +83,15 @@ void PassRows::resize(std::size_t n) {
   alert.resize(n);
 }
 
+Carried::Carried(double first_reading)
+    : bank{all(first_reading), all(first_reading), all(first_reading)} {}
+
 CLICKWISE_WIDE
-void run_forward(const BankRows& bank, PassRows& rows) {
-  BankState state(all(rows.readings.front()));
+void run_forward(const BankRows& bank, std::size_t next, Carried& carried, PassRows& rows) {
+  BankState state = carried.bank;
   for (std::size_t i = 0; i < rows.readings.size(); ++i) {
-    state.step(bank, all(rows.readings[i]));
+    if (i == next) carried.bank = state;
+    step(bank, state, all(rows.readings[i]));
     rows.travel[i] = state.w1;
   }
 }
@@ -104,11 +104,17 @@ void run_backward(const BankRows& bank, std::size_t reach, double rate_hz, const
 }
 
 CLICKWISE_WIDE
-void find_gains(const GainRule& rule, std::size_t reach, PassRows& rows) {
-  FloatRow first{};
-  FloatRow second{};
-  double alert = 0.0;
+void find_gains(const GainRule& rule, std::size_t reach, std::size_t next, Carried& carried,
+                PassRows& rows) {
+  FloatRow first = carried.first;
+  FloatRow second = carried.second;
+  double alert = carried.alert;
   for (std::size_t i = reach; i + reach < rows.readings.size(); ++i) {
+    if (i == next + reach) {
+      carried.first = first;
+      carried.second = second;
+      carried.alert = alert;
+    }
     FloatQuad above = FloatQuad{} - rule.alert_cap;
     for (std::size_t q = 0; q < quads; ++q) {
       average(first, rule.first_keep, q, rows.power[i][q]);

@@ -25,8 +25,23 @@ struct PassRows {
   void resize(std::size_t n);
 };
 
-// The bank forwards.
-void run_forward(const BankRows& bank, PassRows& rows);
+// A recursive pass of the bank.
+struct BankState {
+  Row u, w1, w2;
+};
+
+// What the forward passes carry from one chunk to the next, so that only a series' first chunk
+// needs a margin ahead of it.
+struct Carried {
+  explicit Carried(double first_reading);
+
+  BankState bank;
+  FloatRow first{}, second{};
+  double alert = 0.0;
+};
+
+// The bank forwards. The next chunk begins at this one's row `next`.
+void run_forward(const BankRows& bank, std::size_t next, Carried& carried, PassRows& rows);
 
 // The bank backwards; the bands, by central differences to `reach` readings on either side; the
 // backward half of their power's first average, `keep` being the share kept a reading.
@@ -46,7 +61,8 @@ struct GainRule {
 
 // The forward half of the first average; the power that its gains let through; the forward halves
 // of that power's average and of the alert's.
-void find_gains(const GainRule& rule, std::size_t reach, PassRows& rows);
+void find_gains(const GainRule& rule, std::size_t reach, std::size_t next, Carried& carried,
+                PassRows& rows);
 
 // What comes of readings [margin, margin + travel_m.size()) of the chunk.
 struct PassOutput {
