@@ -17,13 +17,13 @@ constexpr const char* style = R"(
   :root { --ink: #eee; --paper: #161616; --line: #8a8a8a; --soft: #262626; }
 }
 body { font: 16px/1.45 system-ui, sans-serif; color: var(--ink); background: var(--paper);
-       margin: 0 auto; max-width: 60rem; padding: 1rem; }
+       margin: 0 auto; max-width: 76rem; padding: 1rem; }
 h1 { font-size: 1rem; font-weight: 400; margin: 0 0 1rem; }
 h2 { font-size: 1.15rem; margin: 2rem 0 .5rem; }
 .turn { font-size: 1.6rem; line-height: 1.2; font-weight: 700; margin: 0 0 .5rem; }
 .scroll { overflow-x: auto; }
 table { border-collapse: collapse; font-variant-numeric: tabular-nums; width: 100%; }
-th, td { padding: .25rem .6rem; text-align: right; border-bottom: 1px solid var(--line);
+th, td { padding: .25rem .45rem; text-align: right; border-bottom: 1px solid var(--line);
          white-space: nowrap; }
 th:first-child, td:first-child { text-align: left; }
 ul { padding-left: 1.2rem; }
