@@ -158,7 +158,7 @@ TEST_CASE("packing asks for faster rebound, top-outs for slower", "[advice]") {
   CHECK(faster.steps[0].to > faster.steps[0].from);
 
   WrittenRide topping = good_ride();
-  for (int i = 0; i < 40; ++i) topping.top_outs.push_back({2.0 + 2.9 * i, 0.0, -1.0, 10.0});
+  for (int i = 0; i < 90; ++i) topping.top_outs.push_back({2.0 + 1.3 * i, 0.0, -1.0, 10.0});
   const advice::Advice slower = advice::advise({topping.view()}, bike::Aims{});
   REQUIRE(slower.steps.size() == 1);
   CHECK(slower.steps[0].adjuster == bike::Adjuster::low_speed_rebound);

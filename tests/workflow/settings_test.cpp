@@ -11,7 +11,7 @@ using namespace clickwise;
 namespace {
 
 bike::Bike larch() {
-  return bike::parse_bike(test::larch_text(), "larch.toml");
+  return bike::parse_bike(test::larch_text, "larch.toml");
 }
 
 std::string refused(const std::vector<std::string>& texts) {
