@@ -205,12 +205,6 @@ std::optional<std::size_t> Trial::best_click() const {
   return best;
 }
 
-// The unit of a metric's name over SI.
-double metric_scale(sim::Metric metric) {
-  const std::string_view name = sim::to_string(metric);
-  return name.ends_with("_mm") || name.ends_with("_mm_s") ? 1.0 / core::metres_per_mm : 1.0;
-}
-
 // As recorded, and moved by what the model says: the numbers a rider can check on the next run.
 std::vector<Prediction> predictions(const sim::Prediction& predicted,
                                     const sim::EndFigures& recorded) {
@@ -220,7 +214,7 @@ std::vector<Prediction> predictions(const sim::Prediction& predicted,
     const sim::Change& change = predicted.change(metric);
     const bool moves = change.low > 0.0 || change.high < 0.0;
     if (!moves && metric != sim::Metric::bottom_outs) continue;
-    const double scale = metric_scale(metric);
+    const double scale = sim::units_per_si(metric);
     const double now = scale * recorded.value(metric);
     const auto then = [&](double by) { return std::max(0.0, now + scale * by); };
     moved.push_back(

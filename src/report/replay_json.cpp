@@ -1,7 +1,6 @@
 #include "clickwise/core/units.hpp"
 #include "clickwise/report/replay_text.hpp"
 #include "json_writer.hpp"
-#include "words.hpp"
 
 namespace clickwise::report {
 
@@ -46,7 +45,7 @@ json::array changes_json(const sim::Prediction& prediction) {
   json::array changes;
   for (std::size_t m = 0; m < sim::metrics; ++m) {
     const auto metric = static_cast<sim::Metric>(m);
-    const double scale = metric_scale(metric);
+    const double scale = sim::units_per_si(metric);
     const sim::Change& change = prediction.change(metric);
     changes.push_back({{"metric", sim::to_string(metric)},
                        {"now", number(scale * change.now)},
@@ -100,7 +99,7 @@ std::string click_map_json(const workflow::ClickMap& map) {
         {"first", cell.first}, {"second", cell.second}, {"holds_aims", cell.holds_aims}};
     for (std::size_t m = 0; m < sim::metrics; ++m) {
       const auto metric = static_cast<sim::Metric>(m);
-      object[sim::to_string(metric)] = number(metric_scale(metric) * cell.figures.value(metric));
+      object[sim::to_string(metric)] = number(sim::units_per_si(metric) * cell.figures.value(metric));
     }
     cells.push_back(std::move(object));
   }

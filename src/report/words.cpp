@@ -96,9 +96,4 @@ std::vector<std::string> fault_words(const run::FaultLedger& faults) {
   return sentences;
 }
 
-double metric_scale(sim::Metric metric) {
-  const std::string_view name = sim::to_string(metric);
-  return name.ends_with("_mm") || name.ends_with("_mm_s") ? 1000.0 : 1.0;
-}
-
 }  // namespace clickwise::report

@@ -5,7 +5,6 @@
 #include <vector>
 
 #include "clickwise/advice/advise.hpp"
-#include "clickwise/sim/replay.hpp"
 #include "clickwise/workflow/review.hpp"
 
 namespace clickwise::report {
@@ -34,8 +33,5 @@ std::string split_source_words(workflow::SplitSource source);
 
 // One sentence a fault: "gap: 2 on the clock, 1.2 s left out; ..."
 std::vector<std::string> fault_words(const run::FaultLedger& faults);
-
-// The unit of a metric's name over SI: 1000 for "..._mm" and "..._mm_s".
-double metric_scale(sim::Metric metric);
 
 }  // namespace clickwise::report

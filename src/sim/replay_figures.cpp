@@ -2,6 +2,7 @@
 
 #include <algorithm>
 #include <cmath>
+#include <string_view>
 
 namespace clickwise::sim {
 
@@ -16,6 +17,11 @@ const char* to_string(Metric metric) {
                                           "travel.p95_mm",
                                           "bottom_outs"};
   return names[static_cast<std::size_t>(metric)];
+}
+
+double units_per_si(Metric metric) {
+  const std::string_view name = to_string(metric);
+  return name.ends_with("_mm") || name.ends_with("_mm_s") ? 1000.0 : 1.0;
 }
 
 double EndFigures::value(Metric metric) const {

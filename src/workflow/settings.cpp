@@ -173,11 +173,4 @@ std::vector<ChangedSetting> apply_settings(bike::Bike& bike,
   return changed;
 }
 
-std::vector<std::string> setting_names(const bike::Bike& bike) {
-  bike::Bike copy = bike;
-  std::vector<std::string> names;
-  for (const Knob& knob : knobs_of(copy)) names.push_back(knob.name);
-  return names;
-}
-
 }  // namespace clickwise::workflow

@@ -45,6 +45,9 @@ inline constexpr std::size_t metrics = 9;
 // "bands.compression.high_share"
 const char* to_string(Metric metric);
 
+// The unit of that name over SI: 1000 for "..._mm" and "..._mm_s", otherwise 1.
+double units_per_si(Metric metric);
+
 struct BandFigures {
   double low_s = 0.0;
   double high_s = 0.0;

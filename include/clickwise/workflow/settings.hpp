@@ -23,7 +23,4 @@ struct ChangedSetting {
 // does not have (with the nearest one it has) or a value out of its range.
 std::vector<ChangedSetting> apply_settings(bike::Bike& bike, const std::vector<std::string>& texts);
 
-// The names that this bike has, for messages.
-std::vector<std::string> setting_names(const bike::Bike& bike);
-
 }  // namespace clickwise::workflow
