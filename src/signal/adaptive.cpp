@@ -18,7 +18,7 @@ namespace {
 using std::numbers::pi;
 
 constexpr Eigen::Index last = bank_size - 1;  // the slowest member, which is always let through
-constexpr std::size_t chunk_samples = 16384;
+constexpr std::size_t chunk_samples = 8192;
 // Ends: the length of the parabola that continues them, and how much larger the error is there than
 // (3.3) says, measured on seconds cut out of invented rides at 200 Hz and 1 kHz.
 constexpr double end_fit_s = 0.010;
@@ -29,8 +29,14 @@ constexpr double far_end_decay_s = 0.04;
 
 constexpr double slow_log_hz = 600.0;
 
-// Against the chance that noise alone looks like power: what is taken off, in noise variances.
-constexpr float first_toll = 1.5F;
+// Against the chance that noise alone looks like power: what is taken off, in noise variances. A
+// slow log has its motion up to the last hertz, where what is taken off costs more motion than it
+// saves noise, and with it time at speed; measured from 200 Hz to 1 kHz.
+constexpr double fast_log_toll = 1.5;
+constexpr double slow_log_toll = 1.05;
+constexpr double slow_log_noise = 0.3;  // of the noise that the gains reckon with
+constexpr double slow_toll_hz = 250.0;  // slow up to here,
+constexpr double fast_toll_hz = 500.0;  // fast from here on
 // The second average looks closer, since most of the noise is gone.
 constexpr double second_share = 0.25;
 // Whether anything moves is judged over a longer time: when, on average over alert_s, no band has
@@ -46,7 +52,7 @@ constexpr float alert_cap = 18.0F;
 constexpr double periods = 0.4;
 
 // Averages are cut off after this many decay times.
-constexpr double decays = 14.0;
+constexpr double decays = 10.0;
 
 constexpr float least_variance = 1e-30F;  // keeps 0/0 of a silent channel at a gain of 0
 
@@ -58,6 +64,11 @@ double difference_gain(double w) {
     gain += 2.0 * c[j] * std::sin(static_cast<double>(j + 1) * w);
   }
   return gain;
+}
+
+// 0 for a fast log, 1 for a slow one.
+double slowness(double rate_hz) {
+  return std::clamp((fast_toll_hz - rate_hz) / (fast_toll_hz - slow_toll_hz), 0.0, 1.0);
 }
 
 BandLanes keep(const Lanes& decay_s, double rate_hz) {
@@ -82,14 +93,16 @@ AdaptiveSmoother::AdaptiveSmoother(double rate_hz, double noise_m, double memory
 }
 
 void AdaptiveSmoother::find_variances() {
-  constexpr int steps = 2048;
+  constexpr int steps = 400;
   Lanes band = Lanes::Zero();
   Lanes step = Lanes::Zero();
   for (int i = 0; i < steps; ++i) {
-    const double w = pi * (i + 0.5) / steps;
+    const double root = (i + 0.5) / steps;  // dense at low frequencies, where slow members end
+    const double w = pi * root * root * root;
+    const double width = 3.0 * root * root / steps;  // of the mean over all frequencies
     const double gain =
         reach_ == long_reach ? difference_gain<long_reach>(w) : difference_gain<short_reach>(w);
-    const double d = std::pow(gain * rate_hz_, 2.0) / steps;
+    const double d = std::pow(gain * rate_hz_, 2.0) * width;
     double faster = bank_.gain(0, w);
     for (Eigen::Index k = 0; k < last; ++k) {
       const double slower = bank_.gain(k + 1, w);
@@ -106,13 +119,7 @@ void AdaptiveSmoother::find_variances() {
 }
 
 BankRows AdaptiveSmoother::bank_rows() const {
-  BankRows rows{};
-  copy(bank_.pole(), rows.pole);
-  copy(bank_.real_gain(), rows.real_gain);
-  copy(bank_.first(), rows.first);
-  copy(bank_.second(), rows.second);
-  copy(bank_.pair_gain(), rows.pair_gain);
-  return rows;
+  return {row_of(bank_.real_gain()), row_of(bank_.pair_gain()), row_of(bank_.pair_keep())};
 }
 
 GainRule AdaptiveSmoother::gain_rule() const {
@@ -123,15 +130,18 @@ GainRule AdaptiveSmoother::gain_rule() const {
   BandLanes freedom = (4.0 * decay_s * width_hz).sqrt().cast<float>();
   freedom[last] = 0.0F;
   const BandLanes noise = band_variance_ + least_variance;
+  const double slow = slowness(rate_hz_);
+  const auto toll = static_cast<float>(std::lerp(fast_log_toll, slow_log_toll, slow));
+  const auto noise_share = static_cast<float>(std::lerp(1.0, slow_log_noise, slow));
   GainRule rule{};
-  copy(first_keep_, rule.first_keep);
-  copy(second_keep_, rule.second_keep);
-  copy(BandLanes(first_toll * band_variance_), rule.toll);
-  copy(freedom, rule.freedom);
-  copy(BandLanes(freedom / noise), rule.scale);
-  copy(noise, rule.noise);
-  copy(step_variance_, rule.step_variance);
-  rule.alert_keep = alert_keep_;
+  rule.first_keep = row_of(first_keep_);
+  rule.second_keep = row_of(second_keep_);
+  rule.toll = row_of(toll * band_variance_);
+  rule.freedom = row_of(freedom);
+  rule.scale = row_of(freedom / noise);
+  rule.noise = row_of(noise_share * noise);
+  rule.step_variance = row_of(step_variance_);
+  rule.alert_keep = static_cast<float>(alert_keep_);
   rule.alert_cap = alert_cap;
   rule.alert_from = alert_from;
   rule.alert_slope = 1.0F / alert_width;

@@ -11,23 +11,23 @@
 namespace clickwise::signal {
 
 struct BankRows {
-  Row pole, real_gain, first, second, pair_gain;
+  Row real_gain, pair_gain, pair_keep;
 };
 
 // What the passes hand on; one of each a reading of the chunk.
 struct PassRows {
   std::vector<double> readings;
-  std::vector<Row> travel;      // of the bank's members
-  std::vector<FloatRow> bands;  // b_k, then v_last
-  std::vector<FloatRow> power;  // of the bands, on its way through the averages
-  std::vector<float> alert;     // how far that is above noise, on its way through its average
+  std::vector<Row> travel;   // of the bank's members
+  std::vector<Row> bands;    // b_k, then v_last
+  std::vector<Row> power;    // of the bands, on its way through the averages
+  std::vector<float> alert;  // how far that is above noise, on its way through its average
 
   void resize(std::size_t n);
 };
 
-// A recursive pass of the bank.
+// A recursive pass of the bank: past the real pole, past the pair, and the latter's last step.
 struct BankState {
-  Row u, w1, w2;
+  Row u{}, w{}, step{};
 };
 
 // What the forward passes carry from one chunk to the next, so that only a series' first chunk
@@ -36,8 +36,8 @@ struct Carried {
   explicit Carried(double first_reading);
 
   BankState bank;
-  FloatRow first{}, second{};
-  double alert = 0.0;
+  Row first{}, second{};
+  float alert = 0.0F;
 };
 
 // The bank forwards. The next chunk begins at this one's row `next`.
@@ -45,17 +45,17 @@ void run_forward(const BankRows& bank, std::size_t next, Carried& carried, PassR
 
 // The bank backwards; the bands, by central differences to `reach` readings on either side; the
 // backward half of their power's first average, `keep` being the share kept a reading.
-void run_backward(const BankRows& bank, std::size_t reach, double rate_hz, const FloatRow& keep,
+void run_backward(const BankRows& bank, std::size_t reach, double rate_hz, const Row& keep,
                   PassRows& rows);
 
 // Shares of averages kept a reading, and what is noise.
 struct GainRule {
-  FloatRow first_keep, second_keep;
-  FloatRow toll;            // taken off a band's power
-  FloatRow freedom, scale;  // deviations of power above noise: power * scale - freedom
-  FloatRow noise;           // of the bands, (m/s)^2, above 0
-  FloatRow step_variance;   // Wiener error of the bands at a gain of 1
-  double alert_keep;
+  Row first_keep, second_keep;
+  Row toll;            // taken off a band's power
+  Row freedom, scale;  // deviations of power above noise: power * scale - freedom
+  Row noise;           // of the bands, (m/s)^2, above 0
+  Row step_variance;   // Wiener error of the bands at a gain of 1
+  float alert_keep;
   float alert_cap, alert_from, alert_slope;
 };
 

@@ -1,4 +1,4 @@
-// The bank's members side by side, in vectors that every loop keeps in registers. Private to
+// The bank's members side by side in one vector, which every loop keeps in registers. Private to
 // signal.
 #pragma once
 
@@ -9,54 +9,67 @@
 
 namespace clickwise::signal {
 
-inline constexpr std::size_t quad_lanes = 4;
-inline constexpr std::size_t quads = bank_size / quad_lanes;
-static_assert(quads * quad_lanes == bank_size);
+inline constexpr std::size_t lanes = bank_size;
+static_assert(lanes == 8);
 
-using Quad = double __attribute__((vector_size(quad_lanes * sizeof(double))));
-using FloatQuad = float __attribute__((vector_size(quad_lanes * sizeof(float))));
+using Vector = float __attribute__((vector_size(lanes * sizeof(float))));
 
-// Aligned by hand: without the instructions for a Quad the compiler aligns it less than the code
+// Aligned by hand: without the instructions for a Vector the compiler aligns it less than the code
 // with them needs.
-template <typename Vector>
-struct alignas(sizeof(Vector)) RowOf {
-  Vector q[quads];
-  Vector& operator[](std::size_t i) { return q[i]; }
-  const Vector& operator[](std::size_t i) const { return q[i]; }
+struct alignas(sizeof(Vector)) Row {
+  Vector v;
 };
-using Row = RowOf<Quad>;
-using FloatRow = RowOf<FloatQuad>;
 
-template <typename Vector, typename Lanes>
-void copy(const Lanes& lanes, RowOf<Vector>& row) {
-  for (std::size_t k = 0; k < bank_size; ++k)
-    row[k / quad_lanes][k % quad_lanes] = lanes[static_cast<Eigen::Index>(k)];
+[[gnu::always_inline]] inline Row operator+(const Row& a, const Row& b) {
+  return {a.v + b.v};
+}
+[[gnu::always_inline]] inline Row operator-(const Row& a, const Row& b) {
+  return {a.v - b.v};
+}
+[[gnu::always_inline]] inline Row operator*(const Row& a, const Row& b) {
+  return {a.v * b.v};
+}
+[[gnu::always_inline]] inline Row operator/(const Row& a, const Row& b) {
+  return {a.v / b.v};
+}
+
+// The same in every lane.
+[[gnu::always_inline]] inline Row all(float value) {
+  return {Vector{} + value};
+}
+
+template <typename Lanes>
+Row row_of(const Lanes& lanes_of) {
+  Row row{};
+  for (std::size_t k = 0; k < lanes; ++k)
+    row.v[k] = static_cast<float>(lanes_of[static_cast<Eigen::Index>(k)]);
+  return row;
 }
 
 // Each lane less the next slower one; the last lane itself.
-template <typename Vector>
-[[gnu::always_inline]] inline RowOf<Vector> steps(const RowOf<Vector>& row) {
-  RowOf<Vector> out;
-  for (std::size_t q = 0; q < quads; ++q) {
-    const Vector next = q + 1 < quads ? row[q + 1] : Vector{};
-    out[q] = row[q] - __builtin_shufflevector(row[q], next, 1, 2, 3, 4);
-  }
-  return out;
+[[gnu::always_inline]] inline Row steps(const Row& row) {
+  return {row.v - __builtin_shufflevector(row.v, Vector{}, 1, 2, 3, 4, 5, 6, 7, 8)};
 }
 
-template <typename Vector>
-[[gnu::always_inline]] inline auto sum(const RowOf<Vector>& row) {
-  const Vector all = row[0] + row[1] + row[2];
-  return (all[0] + all[1]) + (all[2] + all[3]);
+[[gnu::always_inline]] inline float sum(const Row& row) {
+  const Vector four = row.v + __builtin_shufflevector(row.v, row.v, 4, 5, 6, 7, 0, 1, 2, 3);
+  const Vector two = four + __builtin_shufflevector(four, four, 2, 3, 0, 1, 6, 7, 4, 5);
+  return two[0] + two[1];
 }
 
-[[gnu::always_inline]] inline FloatQuad larger(FloatQuad a, FloatQuad b) {
-  return a > b ? a : b;
+[[gnu::always_inline]] inline Row larger(const Row& a, const Row& b) {
+  return {a.v > b.v ? a.v : b.v};
 }
 
-[[gnu::always_inline]] inline FloatQuad root(FloatQuad a) {
-  FloatQuad out;
-  for (std::size_t i = 0; i < quad_lanes; ++i) out[i] = std::sqrt(a[i]);
+[[gnu::always_inline]] inline float largest(const Row& row) {
+  const Row four = larger(row, {__builtin_shufflevector(row.v, row.v, 4, 5, 6, 7, 0, 1, 2, 3)});
+  const Row two = larger(four, {__builtin_shufflevector(four.v, four.v, 2, 3, 0, 1, 6, 7, 4, 5)});
+  return two.v[0] > two.v[1] ? two.v[0] : two.v[1];
+}
+
+[[gnu::always_inline]] inline Row root(const Row& a) {
+  Row out;
+  for (std::size_t i = 0; i < lanes; ++i) out.v[i] = std::sqrt(a.v[i]);
   return out;
 }
 

@@ -12,8 +12,8 @@ namespace {
 using std::numbers::pi;
 using Complex = std::complex<double>;
 
-constexpr double fastest_hz = 300.0;    // no shaft motion of a bike lies above it
-constexpr double fastest_share = 0.45;  // of the rate
+constexpr double fastest_hz = 300.0;   // no shaft motion of a bike lies above it
+constexpr double fastest_share = 0.5;  // of the rate
 constexpr double slowest_hz = 4.0;
 constexpr double slowest_share = 1.0 / 20.0;  // of the fastest, at low rates
 constexpr double settled = 1e-8;              // share of a transient left
@@ -25,9 +25,10 @@ Complex root_inside(Complex s) {
   return std::abs(z) < 1.0 ? z : 1.0 / z;
 }
 
-// 2 sin(pi f / rate), the size of the first difference at f.
-double difference_gain(double cutoff_hz, double rate_hz) {
-  return 2.0 * std::sin(pi * cutoff_hz / rate_hz);
+// What the first difference makes of a frequency far below the rate. Near half the rate it makes
+// less of it: there a member lets more through than its cut-off says.
+double slow_difference_gain(double cutoff_hz, double rate_hz) {
+  return 2.0 * pi * cutoff_hz / rate_hz;
 }
 
 }  // namespace
@@ -41,22 +42,21 @@ SplineBank::SplineBank(double rate_hz) : rate_hz_(rate_hz) {
   double slowest_pole = 0.0;
   for (Eigen::Index k = 0; k < bank_size; ++k) {
     cutoff_hz_[k] = top * std::pow(step, static_cast<double>(k));
-    const double c = std::pow(difference_gain(cutoff_hz_[k], rate_hz), 2.0);
+    const double c = std::pow(slow_difference_gain(cutoff_hz_[k], rate_hz), 2.0);
     const double real = root_inside(-c).real();
     const Complex pair = root_inside(c * std::polar(1.0, pi / 3.0));
-    pole_[k] = real;
     real_gain_[k] = 1.0 - real;
-    first_[k] = 2.0 * pair.real();
-    second_[k] = -std::norm(pair);
-    pair_gain_[k] = 1.0 - first_[k] - second_[k];
+    pair_gain_[k] = std::norm(1.0 - pair);
+    pair_keep_[k] = std::norm(pair);
     slowest_pole = std::max({slowest_pole, real, std::abs(pair)});
   }
   settling_ = static_cast<std::size_t>(std::ceil(std::log(settled) / std::log(slowest_pole)));
 }
 
 double SplineBank::gain(Eigen::Index k, double w) const {
-  const double s = 2.0 * std::sin(0.5 * w) / difference_gain(cutoff_hz_[k], rate_hz_);
-  return 1.0 / (1.0 + std::pow(s * s, 3));
+  const double s = 2.0 * std::sin(0.5 * w) / slow_difference_gain(cutoff_hz_[k], rate_hz_);
+  const double square = s * s;
+  return 1.0 / (1.0 + square * square * square);
 }
 
 }  // namespace clickwise::signal

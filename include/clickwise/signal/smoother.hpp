@@ -3,7 +3,7 @@
 //
 // The readings are y_i = x(t_i) + e_i with white e of standard deviation n. A bank of quintic
 // smoothing splines with cut-offs f_0 > f_1 > ... has the zero-phase gains
-//   H_k(w) = 1 / (1 + (sin(w/2) / sin(pi f_k/rate))^6)                                 (3.1)
+//   H_k(w) = 1 / (1 + (sin(w/2) / (pi f_k/rate))^6)                                    (3.1)
 // and velocity is their derivative (central differences of order 8, of order 16 below 600 Hz).
 // Neighbouring members differ by the bands b_k = v_k - v_(k+1), whose noise variance s_k^2 follows
 // from n, the difference and H in closed form. The estimate is
@@ -12,8 +12,11 @@
 // Extrapolation, Interpolation, and Smoothing of Stationary Time Series, 1949); its root keeps the
 // band's signal power and with it the share of time above a speed, which w_k itself would lower.
 // e_k is measured twice: first as the band's power less 1.5 s_k^2, then, over a quarter of the
-// time, on what the first gains let through. Travel takes the same gains. While nothing but noise
-// is seen for some tenths of a second, only v_last (4 Hz) is let through. The error's variance is
+// time, on what the first gains let through. Below 500 Hz, where motion fills the spectrum, less
+// is taken off and less noise reckoned with (at 250 Hz and below 1.05 s_k^2 and 0.3 s_k^2): some
+// more noise for the time at speed that the full toll would take. Travel takes the same gains.
+// While nothing but noise is seen for some tenths of a second, only v_last (4 Hz) is let through.
+// The error's variance is
 //   sigma^2 = sum_k 2 w_k / (1 + g_k) u_k,                                             (3.3)
 // u_k being the noise that H_k - H_(k+1), as an amplitude gain of power, leaves of the derivative.
 //
