@@ -1,5 +1,6 @@
 #include "blocks.hpp"
 
+#include <cmath>
 #include <random>
 
 #include "clickwise/core/statistics.hpp"
@@ -13,15 +14,18 @@ constexpr int resamplings = 400;
 
 std::vector<Block> blocks_of(const EndRide& ride) {
   const double interval_s = ride.motion->time.interval_s();
+  const auto full = static_cast<std::size_t>(std::ceil(block_s / interval_s));
   std::vector<Block> blocks;
   Block open;
-  for (std::size_t i = 0; i < ride.counted->size(); ++i) {
-    if ((*ride.counted)[i]) open.seconds += interval_s;
-    open.end = i + 1;
-    if (open.seconds >= block_s) {
-      blocks.push_back(open);
-      open = {i + 1, i + 1, 0.0};
-    }
+  std::size_t counted = 0;
+  for (const std::uint8_t one : *ride.counted) {
+    counted += one;
+    ++open.end;
+    open.seconds = static_cast<double>(counted) * interval_s;
+    if (counted < full) continue;
+    blocks.push_back(open);
+    open = {open.end, open.end, 0.0};
+    counted = 0;
   }
   if (open.seconds >= 0.5 * block_s || blocks.empty()) {
     blocks.push_back(open);

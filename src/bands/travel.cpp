@@ -4,7 +4,6 @@
 
 #include <algorithm>
 #include <cmath>
-#include <numeric>
 #include <stdexcept>
 
 #include "clickwise/core/statistics.hpp"
@@ -13,20 +12,48 @@ namespace clickwise::bands {
 
 namespace {
 
-std::vector<double> counted_travel(std::span<const double> travel_m,
-                                   std::span<const std::uint8_t> counted) {
-  if (travel_m.size() != counted.size())
-    throw std::invalid_argument(fmt::format("counted = {} samples; must be as many as travel, {}",
-                                            counted.size(), travel_m.size()));
-  std::vector<double> values;
-  values.reserve(travel_m.size());
-  for (std::size_t i = 0; i < counted.size(); ++i)
-    if (counted[i] != 0 && std::isfinite(travel_m[i])) values.push_back(travel_m[i]);
-  return values;
+// The counted part of a ride's travel.
+class CountedTravel {
+public:
+  CountedTravel(std::span<const double> travel_m, std::span<const std::uint8_t> counted)
+      : travel_m_(travel_m), counted_(counted) {
+    if (travel_m.size() != counted.size())
+      throw std::invalid_argument(fmt::format("counted = {} samples; must be as many as travel, {}",
+                                              counted.size(), travel_m.size()));
+  }
+
+  template <typename Use>
+  void each(Use use) const {
+    for (std::size_t i = 0; i < counted_.size(); ++i)
+      if (counted_[i] != 0 && std::isfinite(travel_m_[i])) use(travel_m_[i]);
+  }
+
+private:
+  std::span<const double> travel_m_;
+  std::span<const std::uint8_t> counted_;
+};
+
+struct Extent {
+  double least_m = 0.0;
+  double most_m = 0.0;
+  double sum_m = 0.0;
+  std::size_t samples = 0;
+};
+
+Extent extent_of(const CountedTravel& travel) {
+  Extent extent;
+  travel.each([&](double x) {
+    extent.least_m = extent.samples > 0 ? std::min(extent.least_m, x) : x;
+    extent.most_m = extent.samples > 0 ? std::max(extent.most_m, x) : x;
+    extent.sum_m += x;
+    ++extent.samples;
+  });
+  return extent;
 }
 
 // First and last bin, counted from full extension; the samples beyond them belong to them.
 struct Bins {
+  double per_m;
   double width_m;
   double first;
   double last;
@@ -34,7 +61,7 @@ struct Bins {
   // Rounded down by hand: std::floor is a call where the oldest machines of a family have no
   // instruction for it.
   std::size_t of(double value_m) const {
-    const double place = std::clamp(value_m / width_m, first, last);
+    const double place = std::clamp(value_m * per_m, first, last);
     const auto towards_zero = static_cast<long long>(place);
     const long long below = towards_zero - (place < static_cast<double>(towards_zero) ? 1 : 0);
     return static_cast<std::size_t>(below - static_cast<long long>(first));
@@ -45,24 +72,19 @@ Bins bins_over(double least_m, double most_m, double stroke_m) {
   const double width = std::max(std::min(1e-3, stroke_m / 100.0), stroke_m / 2000.0);
   const double beyond = std::ceil(0.25 * stroke_m / width);
   const double in_stroke = std::ceil(stroke_m / width * (1.0 - 1e-9));
-  return {width, std::clamp(std::floor(least_m / width), -beyond, 0.0),
+  return {1.0 / width, width, std::clamp(std::floor(least_m / width), -beyond, 0.0),
           std::clamp(std::floor(most_m / width), in_stroke - 1.0, in_stroke + beyond)};
 }
 
-TravelHistogram histogram_of(const std::vector<double>& values, double interval_s,
-                             double stroke_m) {
-  const auto [least, most] =
-      values.empty() ? std::ranges::minmax_result{0.0, 0.0} : std::ranges::minmax(values);
-  const Bins bins = bins_over(least, most, stroke_m);
+TravelHistogram empty_histogram(const Bins& bins, const Extent& extent) {
   const auto count = static_cast<std::size_t>(bins.last - bins.first) + 1;
   TravelHistogram histogram;
   for (std::size_t i = 0; i <= count; ++i)
     histogram.edges_m.push_back((bins.first + static_cast<double>(i)) * bins.width_m);
-  histogram.edges_m.front() = std::min(histogram.edges_m.front(), least);
-  if (most >= histogram.edges_m.back()) histogram.edges_m.back() = std::nextafter(most, HUGE_VAL);
+  histogram.edges_m.front() = std::min(histogram.edges_m.front(), extent.least_m);
+  if (extent.most_m >= histogram.edges_m.back())
+    histogram.edges_m.back() = std::nextafter(extent.most_m, HUGE_VAL);
   histogram.seconds.assign(count, 0.0);
-  for (const double value : values) histogram.seconds[bins.of(value)] += 1.0;
-  for (double& seconds : histogram.seconds) seconds *= interval_s;
   return histogram;
 }
 
@@ -73,15 +95,26 @@ TravelUse travel_use(std::span<const double> travel_m, std::span<const std::uint
   if (!(stroke_m > 0.0) || !std::isfinite(stroke_m))
     throw std::invalid_argument(
         fmt::format("stroke = {} m; must be positive and finite", stroke_m));
-  const std::vector<double> values = counted_travel(travel_m, counted);
+  const CountedTravel travel(travel_m, counted);
+  const Extent extent = extent_of(travel);
+  const Bins bins = bins_over(extent.least_m, extent.most_m, stroke_m);
   TravelUse use;
-  use.histogram = histogram_of(values, interval_s, stroke_m);
-  if (values.empty()) return use;
-  use.mean_m =
-      std::accumulate(values.begin(), values.end(), 0.0) / static_cast<double>(values.size());
-  use.max_m = *std::ranges::max_element(values);
-  use.p50_m = core::quantile_of(values, 0.50);
-  use.p95_m = core::quantile_of(values, 0.95);
+  use.histogram = empty_histogram(bins, extent);
+  std::vector<double>& seconds = use.histogram.seconds;
+  if (extent.samples == 0) return use;
+  travel.each([&](double x) { seconds[bins.of(x)] += 1.0; });
+  core::BinnedQuantile half(seconds, 0.50);
+  core::BinnedQuantile most(seconds, 0.95);
+  travel.each([&](double x) {
+    const std::size_t bin = bins.of(x);
+    if (bin >= half.first() && bin <= half.last()) half.add(x);
+    if (bin >= most.first() && bin <= most.last()) most.add(x);
+  });
+  for (double& value : seconds) value *= interval_s;
+  use.mean_m = extent.sum_m / static_cast<double>(extent.samples);
+  use.max_m = extent.most_m;
+  use.p50_m = half.value();
+  use.p95_m = most.value();
   return use;
 }
 

@@ -17,29 +17,66 @@ namespace {
 
 using Mask = std::span<const std::uint8_t>;
 
-// The speeds counted in one direction, in no particular order.
-struct Speeds {
-  std::vector<double> compression;
-  std::vector<double> rebound;
+// The counted part of a ride's velocity.
+class CountedVelocity {
+public:
+  CountedVelocity(std::span<const double> velocity_m_s, Mask counted)
+      : velocity_m_s_(velocity_m_s), counted_(counted) {
+    if (velocity_m_s.size() != counted.size())
+      throw std::invalid_argument(
+          fmt::format("counted = {} samples; must be as many as velocity, {}", counted.size(),
+                      velocity_m_s.size()));
+  }
+
+  // Every speed in one direction: +1 for compression, -1 for rebound.
+  template <typename Use>
+  void each(double sign, Use use) const {
+    const bool wanted = sign > 0.0;
+    for (std::size_t i = 0; i < counted_.size(); ++i) {
+      const double v = velocity_m_s_[i];
+      if (counted_[i] != 0 && run::is_compression(v) == wanted && std::isfinite(v)) use(sign * v);
+    }
+  }
+
+private:
+  std::span<const double> velocity_m_s_;
+  Mask counted_;
 };
 
-Speeds counted_speeds(std::span<const double> velocity_m_s, Mask counted) {
-  if (velocity_m_s.size() != counted.size())
-    throw std::invalid_argument(fmt::format("counted = {} samples; must be as many as velocity, {}",
-                                            counted.size(), velocity_m_s.size()));
-  Speeds speeds;
-  speeds.compression.reserve(velocity_m_s.size());
-  speeds.rebound.reserve(velocity_m_s.size());
-  for (std::size_t i = 0; i < counted.size(); ++i) {
-    const double v = velocity_m_s[i];
-    if (counted[i] == 0 || !std::isfinite(v)) continue;
-    if (run::is_compression(v))
-      speeds.compression.push_back(v);
-    else
-      speeds.rebound.push_back(-v);
+// Eq. B6, gathered speed by speed.
+class DensityCells {
+public:
+  explicit DensityCells(double cell_m_s)
+      : cells_per_m_s_(1.0 / cell_m_s),
+        last_(cells_up_to_m_s * cells_per_m_s_),
+        count_(static_cast<std::size_t>(last_) + 1, 0.0),
+        sum_(count_.size(), 0.0) {}
+
+  void add(double speed_m_s) {
+    const auto cell =
+        static_cast<std::size_t>(std::min(speed_m_s * cells_per_m_s_, std::floor(last_)));
+    count_[cell] += 1.0;
+    sum_[cell] += speed_m_s;
   }
-  return speeds;
-}
+
+  core::Density density(double interval_s) const {
+    core::Density result;
+    for (std::size_t cell = 0; cell < count_.size(); ++cell) {
+      if (count_[cell] == 0.0) continue;
+      result.at.push_back(sum_[cell] / count_[cell]);
+      result.weight.push_back(count_[cell] * interval_s);
+    }
+    return result;
+  }
+
+private:
+  static constexpr double cells_up_to_m_s = 20.0;  // faster samples share one last cell
+
+  double cells_per_m_s_;
+  double last_;
+  std::vector<double> count_;
+  std::vector<double> sum_;
+};
 
 // One direction's histogram, over speed.
 struct SpeedHistogram {
@@ -48,24 +85,10 @@ struct SpeedHistogram {
   std::size_t first_high = 0;
 };
 
-// Eqs. B1 to B4. force_n may be null.
-SpeedHistogram fill(const std::vector<double>& speeds, const SpeedAxis& axis, double interval_s,
-                    const ForceTable* force_n) {
-  SpeedHistogram histogram{axis.edges(),
-                           std::vector<double>(axis.bins(), 0.0),
-                           std::vector<double>(axis.bins(), 0.0),
-                           {},
-                           axis.first_high()};
-  if (force_n != nullptr) histogram.joules.assign(axis.bins(), 0.0);
-  for (const double speed : speeds) {
-    const std::size_t bin = axis.bin(speed);
-    histogram.seconds[bin] += 1.0;
-    histogram.metres[bin] += speed;
-    if (force_n != nullptr) histogram.joules[bin] += (*force_n)(speed)*speed;
-  }
-  for (auto* values : {&histogram.seconds, &histogram.metres, &histogram.joules})
-    for (double& value : *values) value *= interval_s;
-  return histogram;
+SpeedHistogram empty_histogram(const SpeedAxis& axis, bool with_joules) {
+  const std::vector<double> zeros(axis.bins(), 0.0);
+  return {axis.edges(), zeros, zeros, with_joules ? zeros : std::vector<double>{},
+          axis.first_high()};
 }
 
 double low(const std::vector<double>& values, std::size_t first_high) {
@@ -80,23 +103,62 @@ double high(const std::vector<double>& values, std::size_t first_high) {
 
 struct Direction {
   SpeedHistogram histogram;
+  core::Density density;
   Band band;
 };
 
-// sign: +1 for compression, -1 for rebound.
-Direction direction(const std::vector<double>& speeds, double sign, double split_m_s,
+// p50 and p95 of the speeds that `seconds` counts, one a sample still.
+void find_quantiles(const CountedVelocity& velocity, double sign, const SpeedAxis& axis,
+                    const std::vector<double>& counts, Band& band) {
+  core::BinnedQuantile half(counts, 0.50);
+  core::BinnedQuantile most(counts, 0.95);
+  const auto& edges = axis.edges();
+  const auto inside = [&](double speed, const core::BinnedQuantile& quantile) {
+    const double below = quantile.first() > 0 ? edges[quantile.first()] : -1.0;
+    return speed > below && speed <= edges[quantile.last() + 1];
+  };
+  velocity.each(sign, [&](double speed) {
+    if (inside(speed, half)) half.add(speed);
+    if (inside(speed, most)) most.add(speed);
+  });
+  band.p50_m_s = half.value();
+  band.p95_m_s = most.value();
+}
+
+// sign: +1 for compression, -1 for rebound. Eqs. B1 to B4.
+Direction direction(const CountedVelocity& velocity, double sign, double split_m_s,
                     double interval_s, const ForceCurve& force_n, const VelocityOptions& options) {
   if (!(split_m_s > 0.0) || !std::isfinite(split_m_s))
     throw std::invalid_argument(
         fmt::format("split = {} m/s; must be positive and finite", split_m_s));
-  const double fastest = speeds.empty() ? 0.0 : *std::ranges::max_element(speeds);
+  double fastest = 0.0;
+  std::size_t samples = 0;
+  velocity.each(sign, [&](double speed) {
+    fastest = std::max(fastest, speed);
+    ++samples;
+  });
   const SpeedAxis axis(split_m_s, fastest, options);
   std::optional<ForceTable> table;
   if (force_n) table.emplace(force_n, sign, fastest);
-  Direction result{fill(speeds, axis, interval_s, table ? &*table : nullptr), {}};
-  const SpeedHistogram& histogram = result.histogram;
-  const std::size_t cut = histogram.first_high;
+  Direction result{empty_histogram(axis, force_n != nullptr), {}, {}};
+  SpeedHistogram& histogram = result.histogram;
+  DensityCells cells(options.density_cell_m_s);
+  velocity.each(sign, [&](double speed) {
+    const std::size_t bin = axis.bin(speed);
+    histogram.seconds[bin] += 1.0;
+    histogram.metres[bin] += speed;
+    if (table) histogram.joules[bin] += (*table)(speed)*speed;
+    cells.add(speed);
+  });
+  result.density = cells.density(interval_s);
   Band& band = result.band;
+  if (samples > 0) {
+    band.max_m_s = fastest;
+    find_quantiles(velocity, sign, axis, histogram.seconds, band);
+  }
+  for (auto* values : {&histogram.seconds, &histogram.metres, &histogram.joules})
+    for (double& value : *values) value *= interval_s;
+  const std::size_t cut = histogram.first_high;
   band.split_m_s = split_m_s;
   band.low_s = low(histogram.seconds, cut);
   band.high_s = high(histogram.seconds, cut);
@@ -104,10 +166,6 @@ Direction direction(const std::vector<double>& speeds, double sign, double split
   band.high_m = high(histogram.metres, cut);
   if (table) band.low_j = low(histogram.joules, cut);
   if (table) band.high_j = high(histogram.joules, cut);
-  if (speeds.empty()) return result;
-  band.max_m_s = fastest;
-  band.p50_m_s = core::quantile_of(speeds, 0.50);
-  band.p95_m_s = core::quantile_of(speeds, 0.95);
   return result;
 }
 
@@ -131,26 +189,11 @@ VelocityHistogram join(const SpeedHistogram& rebound, const SpeedHistogram& comp
   return joined;
 }
 
-// Eq. B6.
-core::Density density(const std::vector<double>& speeds, double interval_s, double cell_m_s) {
-  constexpr double cells_up_to_m_s = 20.0;  // faster samples share one last cell
-  const auto last = static_cast<std::size_t>(cells_up_to_m_s / cell_m_s);
-  std::vector<double> count(last + 1, 0.0);
-  std::vector<double> sum(last + 1, 0.0);
-  for (const double speed : speeds) {
-    const double place = speed / cell_m_s;
-    const std::size_t cell =
-        place < static_cast<double>(last) ? static_cast<std::size_t>(place) : last;
-    count[cell] += 1.0;
-    sum[cell] += speed;
-  }
-  core::Density result;
-  for (std::size_t cell = 0; cell <= last; ++cell) {
-    if (count[cell] == 0.0) continue;
-    result.at.push_back(sum[cell] / count[cell]);
-    result.weight.push_back(count[cell] * interval_s);
-  }
-  return result;
+core::Density density(const CountedVelocity& velocity, double sign, double interval_s,
+                      double cell_m_s) {
+  DensityCells cells(cell_m_s);
+  velocity.each(sign, [&](double speed) { cells.add(speed); });
+  return cells.density(interval_s);
 }
 
 }  // namespace
@@ -171,14 +214,13 @@ VelocityBands velocity_bands(std::span<const double> velocity_m_s,
                              const Splits& splits, const ForceCurve& force_n,
                              const VelocityOptions& options) {
   options.validate();
-  const Speeds speeds = counted_speeds(velocity_m_s, counted);
-  VelocityBands bands;
-  bands.density = {density(speeds.compression, interval_s, options.density_cell_m_s),
-                   density(speeds.rebound, interval_s, options.density_cell_m_s)};
+  const CountedVelocity velocity(velocity_m_s, counted);
   const Direction compression =
-      direction(speeds.compression, +1.0, splits.compression_m_s, interval_s, force_n, options);
-  Direction rebound =
-      direction(speeds.rebound, -1.0, splits.rebound_m_s, interval_s, force_n, options);
+      direction(velocity, +1.0, splits.compression_m_s, interval_s, force_n, options);
+  const Direction rebound =
+      direction(velocity, -1.0, splits.rebound_m_s, interval_s, force_n, options);
+  VelocityBands bands;
+  bands.density = {compression.density, rebound.density};
   bands.histogram = join(rebound.histogram, compression.histogram);
   bands.compression = compression.band;
   bands.rebound = rebound.band;
@@ -198,9 +240,9 @@ SpeedDensities speed_densities(std::span<const double> velocity_m_s,
   VelocityOptions options;
   options.density_cell_m_s = cell_m_s;
   options.validate();
-  const Speeds speeds = counted_speeds(velocity_m_s, counted);
-  return {density(speeds.compression, interval_s, cell_m_s),
-          density(speeds.rebound, interval_s, cell_m_s)};
+  const CountedVelocity velocity(velocity_m_s, counted);
+  return {density(velocity, +1.0, interval_s, cell_m_s),
+          density(velocity, -1.0, interval_s, cell_m_s)};
 }
 
 }  // namespace clickwise::bands

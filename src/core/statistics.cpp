@@ -1,6 +1,7 @@
 #include "clickwise/core/statistics.hpp"
 
 #include <algorithm>
+#include <array>
 #include <cmath>
 #include <limits>
 #include <optional>
@@ -11,6 +12,7 @@ namespace {
 
 constexpr double not_known = std::numeric_limits<double>::quiet_NaN();
 constexpr std::size_t sampled_every = 64;
+constexpr std::size_t block = 1024;
 constexpr std::size_t worth_sampling = 64 * sampled_every;
 
 // Where a quantile lies between order statistics, counted from 0.
@@ -62,9 +64,17 @@ std::optional<double> bracketed(std::span<const double> values, const Place& pla
   const Bracket within = bracket(values, place);
   std::size_t under = 0;
   std::vector<double> near;
-  for (const double value : values) {
-    under += value < within.low;
-    if (value >= within.low && value <= within.high) near.push_back(value);
+  for (std::size_t begin = 0; begin < values.size(); begin += block) {
+    // Without a branch: every value is written, and only the near ones are kept.
+    std::array<double, block> kept;
+    std::size_t count = 0;
+    for (const double value : values.subspan(begin, std::min(block, values.size() - begin))) {
+      const bool is_under = value < within.low;
+      kept[count] = value;
+      count += static_cast<std::size_t>(!is_under & (value <= within.high));
+      under += static_cast<std::size_t>(is_under);
+    }
+    near.insert(near.end(), kept.begin(), kept.begin() + static_cast<std::ptrdiff_t>(count));
   }
   if (place.below < under || place.below + 1 - under >= near.size()) return std::nullopt;
   return between_neighbours(near, {place.below - under, place.part});
@@ -88,6 +98,28 @@ double quantile(std::vector<double> values, double p) {
   if (values.empty()) return not_known;
   if (values.size() >= worth_sampling) return quantile_of_many(values, p);
   return between_neighbours(values, place_of(p, values.size()));
+}
+
+BinnedQuantile::BinnedQuantile(std::span<const double> counts, double p) {
+  std::size_t total = 0;
+  for (const double count : counts) total += static_cast<std::size_t>(count);
+  const Place place = place_of(p, total);
+  part_ = place.part;
+  std::size_t before = 0;  // values in bins in front of `last_`
+  const auto holds = [&](std::size_t rank) {
+    return rank < before + static_cast<std::size_t>(counts[last_]);
+  };
+  const auto advance_to = [&](std::size_t rank) {
+    while (!holds(rank)) before += static_cast<std::size_t>(counts[last_++]);
+  };
+  advance_to(place.below);
+  first_ = last_;
+  rank_ = place.below - before;
+  if (part_ > 0.0) advance_to(place.below + 1);
+}
+
+double BinnedQuantile::value() {
+  return between_neighbours(gathered_, {rank_, part_});
 }
 
 double median(std::vector<double> values) {

@@ -3,6 +3,7 @@
 #include <algorithm>
 #include <iterator>
 
+#include "clickwise/core/wide.hpp"
 #include "clock_steps.hpp"
 
 namespace clickwise::logs {
@@ -16,6 +17,20 @@ constexpr double jump_of_phase = 0.5;        // intervals
 constexpr double coarse_grid = 0.25;         // intervals
 constexpr double range_of_drift = 1.25;      // grid steps
 constexpr std::ptrdiff_t fewest_of_drift = 3;
+
+constexpr std::size_t looked_at_once = 64;
+
+// Without a branch in it, since nearly all steps are clean.
+CLICKWISE_WIDE
+bool any_step_outside(const double* stamps, std::size_t begin, std::size_t end, double least,
+                      double most) {
+  long long outside = 0;
+  for (std::size_t i = begin; i < end; ++i) {
+    const double step = stamps[i] - stamps[i - 1];
+    outside |= static_cast<long long>(step < least) | static_cast<long long>(step > most);
+  }
+  return outside != 0;
+}
 
 class BreakFinder {
 public:
@@ -33,12 +48,16 @@ public:
 
 private:
   std::vector<std::size_t> places_to_look_at() const {
-    std::vector<std::size_t> places;
     const double least = shortest_clean_step * interval_s_;
     const double most = longest_clean_step * interval_s_;
-    for (std::size_t i = 1; i < stamps_.size(); ++i) {
-      const double step = stamps_[i] - stamps_[i - 1];
-      if (step < least || step > most) places.push_back(i);
+    std::vector<std::size_t> places;
+    for (std::size_t begin = 1; begin < stamps_.size(); begin += looked_at_once) {
+      const std::size_t end = std::min(begin + looked_at_once, stamps_.size());
+      if (!any_step_outside(stamps_.data(), begin, end, least, most)) continue;
+      for (std::size_t i = begin; i < end; ++i) {
+        const double step = stamps_[i] - stamps_[i - 1];
+        if (step < least || step > most) places.push_back(i);
+      }
     }
     const auto add = [&](std::size_t sample) {
       if (sample > 0 && sample < stamps_.size()) places.push_back(sample);

@@ -32,7 +32,8 @@ StrokeExcess stroke_excess(std::span<const double> travel_m, std::span<const std
                            double interval_s, double stroke_m) {
   StrokeExcess excess;
   for (std::size_t i = 0; i < travel_m.size(); ++i) {
-    if (usable[i] == 0) continue;
+    const bool inside = travel_m[i] >= 0.0 && travel_m[i] <= stroke_m;
+    if (inside || usable[i] == 0) continue;
     add(excess.beyond_stroke, travel_m[i] - stroke_m, interval_s, tolerance_m(stroke_m));
     add(excess.below_zero, -travel_m[i], interval_s, tolerance_m(stroke_m));
   }

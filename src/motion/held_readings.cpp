@@ -53,47 +53,47 @@ run::Stretch padded(run::Stretch stretch, run::Stretch within) {
           std::min(stretch.end + 1, within.end)};
 }
 
+double range(const run::Channel& channel, std::size_t begin, std::size_t end) {
+  double low = std::numeric_limits<double>::infinity(), high = -low;
+  for (std::size_t i = begin; i < end; ++i) {
+    if (!std::isfinite(channel.readings[i])) continue;
+    low = std::min(low, channel.readings[i]);
+    high = std::max(high, channel.readings[i]);
+  }
+  return high > low ? high - low : 0.0;
+}
+
 // Does any other channel move over [begin, end)?
-class OtherChannels {
-public:
-  explicit OtherChannels(const FaultSearch& search) : search_(search) {
-    for (const run::Channel& channel : search.recording.channels)
-      whole_.push_back(range(channel, 0, channel.readings.size()));
+bool others_move(const FaultSearch& search, std::size_t begin, std::size_t end) {
+  const auto& channels = search.recording.channels;
+  for (std::size_t c = 0; c < channels.size(); ++c) {
+    if (c == search.channel) continue;
+    const double moved = range(channels[c], begin, end);
+    if (moved > 0.0 && moved > moving_share * range(channels[c], 0, channels[c].readings.size()))
+      return true;
   }
+  return false;
+}
 
-  bool move(std::size_t begin, std::size_t end) const {
-    const auto& channels = search_.recording.channels;
-    for (std::size_t c = 0; c < channels.size(); ++c)
-      if (c != search_.channel && whole_[c] > 0.0 &&
-          range(channels[c], begin, end) > moving_share * whole_[c])
-        return true;
-    return false;
-  }
-
-private:
-  static double range(const run::Channel& channel, std::size_t begin, std::size_t end) {
-    double low = std::numeric_limits<double>::infinity(), high = -low;
-    for (std::size_t i = begin; i < end; ++i) {
-      if (!std::isfinite(channel.readings[i])) continue;
-      low = std::min(low, channel.readings[i]);
-      high = std::max(high, channel.readings[i]);
-    }
-    return high > low ? high - low : 0.0;
-  }
-
-  const FaultSearch& search_;
-  std::vector<double> whole_;
+// Runs of one and the same reading: the long ones, and how many there are of each length.
+struct Flats {
+  std::vector<run::Stretch> longer;  // than `least`
+  std::vector<std::size_t> count;    // by length, up to `least`
 };
 
-// Runs of one and the same reading, two samples or more.
-std::vector<run::Stretch> flat_stretches(const FaultSearch& search,
-                                         const std::vector<run::Stretch>& runs) {
-  std::vector<run::Stretch> flats;
+Flats flats_of(const FaultSearch& search, const std::vector<run::Stretch>& runs,
+               std::size_t least) {
+  const auto readings = search.readings();
+  Flats flats{{}, std::vector<std::size_t>(least + 1, 0)};
   for (const run::Stretch& run : runs) {
-    for (std::size_t i = run.begin; i < run.end;) {
-      const run::Stretch flat{i, flat_until(search, i, run.end, 0.0)};
-      if (flat.end - flat.begin >= 2) flats.push_back(flat);
-      i = flat.end;
+    std::size_t begin = run.begin;
+    for (std::size_t i = run.begin + 1; i <= run.end; ++i) {
+      if (i < run.end && readings[i] == readings[i - 1]) continue;
+      if (i - begin > least)
+        flats.longer.push_back({begin, i});
+      else
+        ++flats.count[i - begin];
+      begin = i;
     }
   }
   return flats;
@@ -101,12 +101,20 @@ std::vector<run::Stretch> flat_stretches(const FaultSearch& search,
 
 // How long this channel's readings usually stay the same at most: a channel with noise never rests.
 // The longest few may be the faults that are looked for.
-std::size_t usual_flat_samples(std::vector<run::Stretch> flats) {
-  if (flats.size() <= unusual_flats) return 1;
-  const auto place = flats.begin() + static_cast<std::ptrdiff_t>(unusual_flats);
-  std::ranges::nth_element(flats, place, std::ranges::greater{},
-                           [](const run::Stretch& flat) { return flat.end - flat.begin; });
-  return place->end - place->begin;
+std::size_t usual_flat_samples(const Flats& flats) {
+  std::size_t longer = flats.longer.size();
+  if (longer > unusual_flats) {
+    std::vector<std::size_t> lengths;
+    for (const run::Stretch& flat : flats.longer) lengths.push_back(flat.end - flat.begin);
+    const auto place = lengths.begin() + static_cast<std::ptrdiff_t>(unusual_flats);
+    std::ranges::nth_element(lengths, place, std::ranges::greater{});
+    return *place;
+  }
+  for (std::size_t length = flats.count.size(); length-- > 2;) {
+    longer += flats.count[length];
+    if (longer > unusual_flats) return length;
+  }
+  return 1;
 }
 
 // How long a reading at this travel may stay the same. The ground and the air hold an end at its
@@ -138,13 +146,13 @@ Masked mask_saturated(FaultSearch& search) {
 
 Masked mask_stuck(FaultSearch& search) {
   Masked masked;
-  const OtherChannels others(search);
   const auto runs = search.usable_runs();
-  const std::vector<run::Stretch> flats = flat_stretches(search, runs);
+  const std::size_t least = search.samples(search.options.stuck_noisy_s, 3) - 1;
+  const Flats flats = flats_of(search, runs, least);
   const std::size_t usual = usual_flats * usual_flat_samples(flats);
-  for (const run::Stretch& flat : flats) {
+  for (const run::Stretch& flat : flats.longer) {
     const std::size_t limit = stuck_samples(search, search.travel_m[flat.begin], usual);
-    if (flat.end - flat.begin < limit || !others.move(flat.begin, flat.end)) continue;
+    if (flat.end - flat.begin < limit || !others_move(search, flat.begin, flat.end)) continue;
     const auto within =
         std::ranges::find_if(runs, [&](const run::Stretch& run) { return flat.begin < run.end; });
     mask(search, padded(flat, *within), masked);

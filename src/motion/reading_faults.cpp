@@ -4,6 +4,7 @@
 
 #include <algorithm>
 #include <cmath>
+#include <cstring>
 #include <stdexcept>
 
 #include "clickwise/motion/calibration.hpp"
@@ -17,11 +18,17 @@ std::size_t FaultSearch::samples(double seconds, std::size_t least) const {
 
 std::vector<run::Stretch> FaultSearch::usable_runs() const {
   std::vector<run::Stretch> runs;
+  const auto behind_run = [this](std::size_t begin, std::size_t end) {
+    const void* const hole = std::memchr(usable.data() + begin, 0, end - begin);
+    return hole == nullptr
+               ? end
+               : static_cast<std::size_t>(static_cast<const std::uint8_t*>(hole) - usable.data());
+  };
   for (const run::Stretch& stretch : recording.stretches) {
     for (std::size_t i = stretch.begin; i < stretch.end; ++i) {
       if (usable[i] == 0) continue;
       const std::size_t begin = i;
-      while (i < stretch.end && usable[i] != 0) ++i;
+      i = behind_run(begin, stretch.end);
       runs.push_back({begin, i});
     }
   }

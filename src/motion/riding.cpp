@@ -29,13 +29,14 @@ void check(const std::vector<const run::Motion*>& ends, std::span<const double> 
 // Eq. M13 for one end over [begin, end).
 Block state(const run::Motion& motion, std::size_t begin, std::size_t end,
             const RidingOptions& options) {
-  double sum = 0.0, count = 0.0;
+  double sum = 0.0;
+  int valid = 0;
   for (std::size_t i = begin; i < end; ++i) {
-    if (motion.valid[i] == 0) continue;
-    sum += std::abs(motion.velocity_m_s[i]);
-    count += 1.0;
+    valid += motion.valid[i];
+    sum += motion.valid[i] != 0 ? std::abs(motion.velocity_m_s[i]) : 0.0;
   }
-  if (count == 0.0) return Block::unknown;
+  if (valid == 0) return Block::unknown;
+  const auto count = static_cast<double>(valid);
   const double moving =
       std::max(options.moving_m_s, options.moving_noises * motion.velocity_noise_m_s);
   return sum > moving * count ? Block::moving : Block::rest;
@@ -46,7 +47,7 @@ Block state(const std::vector<const run::Motion*>& ends, std::span<const double>
   Block block = Block::unknown;
   for (const run::Motion* motion : ends)
     block = std::max(block, state(*motion, begin, end, options));
-  for (std::size_t i = begin; i < end && !speed_m_s.empty(); ++i)
+  for (std::size_t i = begin; i < end && block != Block::moving && !speed_m_s.empty(); ++i)
     if (speed_m_s[i] > options.rolling_m_s) return Block::moving;
   return block;
 }
@@ -70,7 +71,7 @@ void clear_standing(std::vector<std::uint8_t>& mask, const std::vector<Block>& b
 std::vector<std::uint8_t> Riding::counted(const run::Motion& end) const {
   std::vector<std::uint8_t> both(mask.size());
   std::ranges::transform(mask, end.valid, both.begin(), [](std::uint8_t a, std::uint8_t b) {
-    return static_cast<std::uint8_t>(a != 0 && b != 0);
+    return static_cast<std::uint8_t>(a & b);
   });
   return both;
 }
@@ -85,8 +86,10 @@ Riding riding(const std::vector<const run::Motion*>& ends, std::span<const doubl
     blocks.push_back(state(ends, speed_m_s, begin, std::min(begin + block, time.samples), options));
   Riding result;
   result.mask.resize(time.samples);
-  for (std::size_t i = 0; i < time.samples; ++i)
-    result.mask[i] = std::ranges::any_of(ends, [i](const auto* end) { return end->valid[i] != 0; });
+  for (const run::Motion* end : ends)
+    std::ranges::transform(
+        result.mask, end->valid, result.mask.begin(),
+        [](std::uint8_t a, std::uint8_t b) { return static_cast<std::uint8_t>(a | b); });
   clear_standing(result.mask, blocks, block, static_cast<double>(block) * time.interval_s(),
                  options.longest_rest_s);
   result.riding_s = static_cast<double>(std::ranges::count(result.mask, 1)) * time.interval_s();

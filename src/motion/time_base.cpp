@@ -44,12 +44,18 @@ double largest_residual(std::span<const double> t_s, const Line& line) {
   return largest;
 }
 
+// Below 2^51 in size; std::round is a call where the oldest machines have no instruction for it.
+double nearest_whole(double value) {
+  constexpr double push_out_fraction = 6755399441055744.0;  // 1.5 * 2^52
+  return (value + push_out_fraction) - push_out_fraction;
+}
+
 // The decimal step (s) of which every stamp is a multiple; 0 when finer than 0.1 us.
 double stamp_quantum_s(std::span<const double> t_s) {
   for (const double per_second : {1.0, 1e1, 1e2, 1e3, 1e4, 1e5, 1e6, 1e7}) {
     const auto whole = [&](double t) {
       const double steps = (t - t_s[0]) * per_second;
-      return std::abs(steps - std::round(steps)) < 1e-3 + 1e-9 * std::abs(steps);
+      return std::abs(steps - nearest_whole(steps)) < 1e-3 + 1e-9 * std::abs(steps);
     };
     if (std::ranges::all_of(t_s, whole)) return 1.0 / per_second;
   }
@@ -105,13 +111,14 @@ std::vector<double> on_base(const run::Recording& recording, std::size_t channel
                             const UniformClock& clock) {
   const std::vector<double>& readings = recording.channels.at(channel).readings;
   std::vector<double> values(clock.base.samples, std::numeric_limits<double>::quiet_NaN());
+  const std::vector<double>& place = clock.place;
   for (const run::Stretch& stretch : recording.stretches) {
+    if (stretch.begin == stretch.end) continue;
+    auto j = static_cast<std::size_t>(std::max(0.0, std::ceil(place[stretch.begin])));
     for (std::size_t i = stretch.begin; i + 1 < stretch.end; ++i) {
-      const double from = clock.place[i], to = clock.place[i + 1];
-      for (double at = std::max(0.0, std::ceil(from)); at <= to; at += 1.0) {
-        const auto j = static_cast<std::size_t>(at);
-        if (j >= values.size()) break;
-        const double part = to > from ? (at - from) / (to - from) : 0.0;
+      const double step = place[i + 1] - place[i];
+      for (; j < values.size() && static_cast<double>(j) <= place[i + 1]; ++j) {
+        const double part = step > 0.0 ? (static_cast<double>(j) - place[i]) / step : 0.0;
         values[j] = readings[i] + part * (readings[i + 1] - readings[i]);
       }
     }

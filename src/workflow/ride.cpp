@@ -50,10 +50,11 @@ void find_riding(const std::vector<double>& speed_m_s, Ride& ride) {
   for (const RideEnd& end : ride.ends) motions.push_back(&end.motion);
   const motion::Riding riding = motion::riding(motions, speed_m_s);
   ride.log.riding_s = riding.riding_s;
-  for (RideEnd& end : ride.ends) {
+  core::parallel_for(ride.ends.size(), [&](std::size_t i) {
+    RideEnd& end = ride.ends[i];
     end.counted = riding.counted(end.motion);
     end.riding_s = counted_seconds(end.counted, end.motion.time.interval_s());
-  }
+  });
 }
 
 constexpr double slowest_rate_hz = 10.0;    // below it no movement of a wheel can be followed
@@ -141,9 +142,13 @@ Ride load_ride(const RideOptions& options) {
   std::vector<motion::PotentiometerMotion> motions(names.size());
   motion::MotionOptions motion_options;
   motion_options.smooth_span_s = options.smooth_span_s;
-  core::parallel_for(names.size(), [&](std::size_t i) {
-    motions[i] =
-        motion::from_potentiometer(recording, i, *ride.bike.end(names[i]), clock, motion_options);
+  std::vector<double> speed_m_s;
+  core::parallel_for(names.size() + 1, [&](std::size_t i) {
+    if (i == names.size())
+      speed_m_s = speed_on_base(ride.bike, recording, clock);
+    else
+      motions[i] =
+          motion::from_potentiometer(recording, i, *ride.bike.end(names[i]), clock, motion_options);
   });
   for (std::size_t i = 0; i < names.size(); ++i) {
     ride.log.faults.merge(motions[i].faults);
@@ -151,7 +156,7 @@ Ride load_ride(const RideOptions& options) {
     ride.ends.push_back({names[i], std::move(motions[i].motion), {}, 0.0});
     leave_out_nonsense(*ride.bike.end(names[i]), ride.ends.back(), ride.log.faults, ride.notes);
   }
-  find_riding(speed_on_base(ride.bike, recording, clock), ride);
+  find_riding(speed_m_s, ride);
   refuse_without_ride(ride, options.log_path);
   return ride;
 }

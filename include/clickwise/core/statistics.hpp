@@ -1,6 +1,7 @@
 // Summary statistics that the whole program shares.
 #pragma once
 
+#include <cstddef>
 #include <span>
 #include <vector>
 
@@ -15,6 +16,28 @@ double quantile(std::vector<double> values, double p);
 double quantile_of(std::span<const double> values, double p);
 
 double median(std::vector<double> values);
+
+// The same of values that were counted into bins in rising order: only those of the bins that hold
+// the quantile need be looked at again. Make one, gather the values of bins [first, last], ask.
+class BinnedQuantile {
+public:
+  // counts: whole numbers, how many values each bin holds; at least one in all.
+  BinnedQuantile(std::span<const double> counts, double p);
+
+  std::size_t first() const { return first_; }
+  std::size_t last() const { return last_; }
+  void add(double value) { gathered_.push_back(value); }
+
+  // Once every value of those bins is there.
+  double value();
+
+private:
+  std::size_t first_ = 0;
+  std::size_t last_ = 0;
+  std::size_t rank_ = 0;  // among the gathered
+  double part_ = 0.0;     // of the way to the next
+  std::vector<double> gathered_;
+};
 
 // Two-pass mean and sample standard deviation (n - 1), with the rounding term of the second pass
 // taken out (Chan, Golub and LeVeque, The American Statistician 37:242-247, 1983, eq. 1.7). NaN
