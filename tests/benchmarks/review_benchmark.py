@@ -26,8 +26,8 @@ def timed_review(log, bike):
     return time.perf_counter() - start
 
 
-def peer(log):
-    out = subprocess.run([sys.executable, here / "pandas_review.py", log], check=True,
+def peer(log, *options):
+    out = subprocess.run([sys.executable, here / "pandas_review.py", log, *options], check=True,
                          capture_output=True, text=True).stdout
     return json.loads(out)["all_s"]
 
@@ -39,12 +39,14 @@ with tempfile.TemporaryDirectory() as folder:
     size = log.stat().st_size
     review_s = best(lambda: timed_review(log, bike))
     peer_s = best(lambda: peer(log))
+    plain_s = best(lambda: peer(log, "--plain"))
     passes = json.loads(subprocess.run([build / "tests/benchmarks/from_chars_pass", log],
                                        check=True, capture_output=True, text=True).stdout)
 
 print(f"log                          {size / 1e6:8.1f} MB")
 print(f"review --json -, the process {review_s:8.3f} s")
 print(f"pandas and SciPy, inside     {peer_s:8.3f} s   {peer_s / review_s:6.2f} times the review")
+print(f"the same, much left out      {plain_s:8.3f} s   {plain_s / review_s:6.2f} times the review")
 print(f"from_chars over every cell   {passes['cells_s']:8.3f} s   review is "
       f"{review_s / passes['cells_s']:.2f} times it")
 print(f"bytes read once              {passes['bytes_s']:8.3f} s   review is "
