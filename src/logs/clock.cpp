@@ -48,8 +48,8 @@ private:
 
   void require_three() const {
     if (stamps_.size() < 3)
-      refuse("the time column \"" + column_ + "\" has " + std::to_string(stamps_.size()) +
-                 " readable stamps, too few for a clock",
+      refuse("the time column \"" + column_ + "\" has too few readable stamps for a clock (" +
+                 std::to_string(stamps_.size()) + ")",
              "check that the bike file names the right column, and that the log is whole");
   }
 

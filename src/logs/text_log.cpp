@@ -79,7 +79,8 @@ run::Recording read_text_log(const std::string& path, const bike::LogFormat& for
     clock = uniform_clock(read.rows, *format.rate_hz, read.header_repeats);
     clock.malformed_s = static_cast<double>(read.malformed_rows()) * clock.interval_s;
     if (read.rows < 3)
-      throw core::JobError({path}, "the log has " + std::to_string(read.rows) + " samples, too few",
+      throw core::JobError({path},
+                           "the log has too few samples (" + std::to_string(read.rows) + ")",
                            "check that the log is whole");
   }
   recording.interval_s = clock.interval_s;
