@@ -4,10 +4,16 @@
 
 #include <utility>
 
+#include "clickwise/core/units.hpp"
+
 namespace clickwise::bike {
 
 std::string ColumnRef::label() const {
   return name.empty() ? fmt::format("column {}", number) : name;
+}
+
+double SprungAccel::m_s2_per_unit() const {
+  return (is_up ? 1.0 : -1.0) * (in_g ? core::standard_gravity_m_s2 : 1.0);
 }
 
 const std::optional<Clicks>& DynoDamper::counted(Adjuster adjuster) const {

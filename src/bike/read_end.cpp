@@ -77,7 +77,21 @@ Split read_split(const io::TomlTable& table) {
   return {read_speed(table, "compression_mm_s"), read_speed(table, "rebound_mm_s")};
 }
 
+SprungAccel read_sprung_accel(const io::TomlTable& table) {
+  SprungAccel accel;
+  accel.column = read_column(table);
+  accel.in_g = table.need_choice("unit", {"g", "m/s2"}) == "g";
+  const auto up = table.integer("up", -1, 1);
+  if (up == 0)
+    table.find("up")->refuse("an axis points up or down",
+                             "write up = 1 where the channel reads +1 g at rest, up = -1 where it "
+                             "reads -1 g");
+  accel.is_up = up.value_or(1) > 0;
+  return accel;
+}
+
 void read_optional_parts(const io::TomlTable& table, End& end) {
+  if (const auto accel = table.table("sprung_accel")) end.sprung_accel = read_sprung_accel(*accel);
   if (const auto tyre = table.table("tyre")) end.tyre = read_tyre(*tyre);
   if (const auto ratio = table.find("ratio")) end.ratio = read_ratio(*ratio, end.stroke_m);
   if (const auto bottom_out = table.table("bottom_out"))

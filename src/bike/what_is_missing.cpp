@@ -37,6 +37,11 @@ void missing_at(const End& end, EndName name, std::vector<Missing>& all) {
     all.push_back({3, fmt::format("{}.unsprung_mass_kg brings the sprung mass, which replay, "
                                   "predictions and the energy of bottom-outs need",
                                   key)});
+  if (!end.sprung_accel)
+    all.push_back({8, fmt::format("{}.sprung_accel, an accelerometer on the sprung side above the "
+                                  "{}, brings the damper's curve and friction as ridden, and its "
+                                  "fade",
+                                  key, part(name))});
   if (!end.tyre)
     all.push_back({4, fmt::format("{}.tyre brings the ground under the wheel in replay; without it "
                                   "a usual tyre is assumed",

@@ -2,6 +2,7 @@
 
 #include <fmt/format.h>
 
+#include "apparent_words.hpp"
 #include "clickwise/core/units.hpp"
 #include "words.hpp"
 
@@ -142,6 +143,12 @@ std::string adjuster_table(const workflow::EndReview& end) {
                              : "");
 }
 
+std::string apparent_section(const workflow::EndReview& end) {
+  if (!end.apparent || !end.apparent->problem.empty()) return "";
+  const ApparentTable words = apparent_table(*end.apparent);
+  return "<h3>The damper as ridden</h3>\n" + table(words.head, words.rows) + list(words.sentences);
+}
+
 std::string bottom_out_table(const workflow::EndReview& end) {
   std::vector<std::vector<std::string>> rows;
   for (const run::EndStop& stop : end.bottom_outs)
@@ -165,7 +172,7 @@ std::string end_section(const workflow::EndReview& end) {
           split_source_words(end.rebound_split_source), to_mm(end.travel.mean_m),
           to_mm(end.travel.p95_m), to_mm(end.travel.max_m), to_mm(end.stroke_m),
           to_mm(end.velocity_noise_m_s)) +
-      adjuster_table(end) + bottom_out_table(end);
+      adjuster_table(end) + apparent_section(end) + bottom_out_table(end);
   return section(part_words(end.name, true), body);
 }
 

@@ -1,5 +1,6 @@
 #include "clickwise/report/review_json.hpp"
 
+#include "apparent_json.hpp"
 #include "clickwise/core/units.hpp"
 #include "json_writer.hpp"
 
@@ -131,21 +132,24 @@ json::object adjusters_json(const std::vector<workflow::AdjusterReview>& adjuste
 }
 
 json::object end_json(const workflow::EndReview& end) {
-  return {{"source", text(source_name(end.source))},
-          {"stroke_mm", number(to_mm(end.stroke_m))},
-          {"riding_s", number(end.riding_s)},
-          {"velocity_noise_mm_s", number(to_mm(end.velocity_noise_m_s))},
-          {"smoothing", text(end.smoothing)},
-          {"velocity_histogram", velocity_histogram_json(end.bands.histogram)},
-          {"bands",
-           {{"compression", band_json(end.bands.compression, end.compression_split_source)},
-            {"rebound", band_json(end.bands.rebound, end.rebound_split_source)}}},
-          {"travel", travel_json(end.travel)},
-          {"bottom_outs", stops_json(end.bottom_outs)},
-          {"top_outs", stops_json(end.top_outs)},
-          {"hit_trains", trains_json(end.trains)},
-          {"damper_assumed", end.damper_assumed},
-          {"adjusters", adjusters_json(end.adjusters)}};
+  json::object object{
+      {"source", text(source_name(end.source))},
+      {"stroke_mm", number(to_mm(end.stroke_m))},
+      {"riding_s", number(end.riding_s)},
+      {"velocity_noise_mm_s", number(to_mm(end.velocity_noise_m_s))},
+      {"smoothing", text(end.smoothing)},
+      {"velocity_histogram", velocity_histogram_json(end.bands.histogram)},
+      {"bands",
+       {{"compression", band_json(end.bands.compression, end.compression_split_source)},
+        {"rebound", band_json(end.bands.rebound, end.rebound_split_source)}}},
+      {"travel", travel_json(end.travel)},
+      {"bottom_outs", stops_json(end.bottom_outs)},
+      {"top_outs", stops_json(end.top_outs)},
+      {"hit_trains", trains_json(end.trains)},
+      {"damper_assumed", end.damper_assumed},
+      {"adjusters", adjusters_json(end.adjusters)}};
+  if (end.apparent) object["apparent_damper"] = apparent_json(*end.apparent);
+  return object;
 }
 
 json::object symptom_json(const advice::Symptom& symptom) {

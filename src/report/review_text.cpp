@@ -5,6 +5,7 @@
 #include <cmath>
 #include <iterator>
 
+#include "apparent_words.hpp"
 #include "clickwise/core/units.hpp"
 #include "words.hpp"
 
@@ -157,6 +158,8 @@ std::string review_text(const workflow::Review& review, const TextStyle& style) 
     write_travel(out, end);
     write_events(out, end);
     write_adjusters(out, end);
+    if (end.apparent)
+      for (const std::string& words : apparent_words(*end.apparent)) out.line("  {}", words);
   }
   if (review.front_rear) {
     out.heading("Front beside rear");

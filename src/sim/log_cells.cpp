@@ -3,6 +3,9 @@
 #include <algorithm>
 #include <charconv>
 #include <cmath>
+#include <utility>
+
+#include "clickwise/core/units.hpp"
 
 namespace clickwise::sim {
 
@@ -44,6 +47,9 @@ int decimals_of(ColumnKind kind, const LoggerPlan& plan) {
       return plan.time_decimals;
     case ColumnKind::speed:
       return speed_decimals;
+    case ColumnKind::front_accel:
+    case ColumnKind::rear_accel:
+      return plan.sprung_accel.decimals;
     case ColumnKind::extra:
       return plan.extra_decimals;
     default:
@@ -63,7 +69,21 @@ LogCells::LogCells(const bike::Bike& bike, const LoggerPlan& plan, const Truth& 
   struck_.assign(faults_.size(), false);
 }
 
+double LogCells::felt_reading(bike::EndName name, double t_s) {
+  const std::vector<double>& felt = truth_.end(name)->felt_m_s2;
+  const double u = std::clamp(t_s * truth_.rate_hz, 0.0, static_cast<double>(felt.size() - 1));
+  const auto i = std::min(static_cast<std::size_t>(u), felt.size() - 2);
+  const double felt_m_s2 = felt[i] + (u - static_cast<double>(i)) * (felt[i + 1] - felt[i]);
+  const SprungAccelPlan& accel = plan_.sprung_accel;
+  const double felt_g = felt_m_s2 / core::standard_gravity_m_s2 + accel.bias_g +
+                        (accel.noise_g > 0.0 ? accel.noise_g * chance_.normal() : 0.0);
+  return std::clamp(felt_g, -accel.range_g, accel.range_g) * core::standard_gravity_m_s2 /
+         bike_.end(name)->sprung_accel->m_s2_per_unit();
+}
+
 double LogCells::reading(const LogRow& row) {
+  if (kind_ == ColumnKind::front_accel) return felt_reading(bike::EndName::front, row.sampled_s);
+  if (kind_ == ColumnKind::rear_accel) return felt_reading(bike::EndName::rear, row.sampled_s);
   if (kind_ == ColumnKind::speed) {
     const auto i = static_cast<std::size_t>(row.sampled_s * truth_.rate_hz);
     const double speed = truth_.progress.speed_m_s[std::min(i, truth_.samples() - 1)];
@@ -78,8 +98,17 @@ double LogCells::reading(const LogRow& row) {
   return readings_(travel) + plan_.noise_counts * chance_.normal();
 }
 
+double LogCells::full_reading() const {
+  for (const auto& [kind, name] : {std::pair{ColumnKind::front_accel, bike::EndName::front},
+                                   std::pair{ColumnKind::rear_accel, bike::EndName::rear}})
+    if (kind_ == kind)
+      return plan_.sprung_accel.range_g * core::standard_gravity_m_s2 /
+             std::abs(bike_.end(name)->sprung_accel->m_s2_per_unit());
+  return std::exp2(plan_.adc_bits) - 1.0;
+}
+
 std::optional<double> LogCells::damaged(double reading, double at_s) {
-  const double full = std::exp2(plan_.adc_bits) - 1.0;
+  const double full = full_reading();
   const bool converted = decimals_of(kind_, plan_) == 0;
   double value = converted ? std::clamp(std::round(reading), 0.0, full) : reading;
   bool stuck = false;

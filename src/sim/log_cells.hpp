@@ -29,6 +29,8 @@ public:
 
 private:
   double reading(const LogRow& row);
+  double felt_reading(bike::EndName name, double t_s);
+  double full_reading() const;
   std::optional<double> damaged(double reading, double at_s);
 
   const bike::Bike& bike_;

@@ -22,6 +22,10 @@ std::vector<Wanted> wanted_columns(const bike::Bike& bike) {
   if (bike.front) wanted.push_back({bike.front->sensor.column, ColumnKind::front});
   if (bike.rear) wanted.push_back({bike.rear->sensor.column, ColumnKind::rear});
   if (bike.log.speed) wanted.push_back({bike.log.speed->column, ColumnKind::speed});
+  if (bike.front && bike.front->sprung_accel)
+    wanted.push_back({bike.front->sprung_accel->column, ColumnKind::front_accel});
+  if (bike.rear && bike.rear->sprung_accel)
+    wanted.push_back({bike.rear->sprung_accel->column, ColumnKind::rear_accel});
   return wanted;
 }
 

@@ -9,7 +9,7 @@
 
 namespace clickwise::sim {
 
-enum class ColumnKind { time, front, rear, speed, extra };
+enum class ColumnKind { time, front, rear, speed, front_accel, rear_accel, extra };
 
 struct LogColumn {
   std::string name;

@@ -40,8 +40,8 @@ private:
 
 EndTruth empty_truth(std::size_t samples) {
   EndTruth truth;
-  for (auto* series :
-       {&truth.travel_m, &truth.velocity_m_s, &truth.tyre_n, &truth.damper_n, &truth.ground_m})
+  for (auto* series : {&truth.travel_m, &truth.velocity_m_s, &truth.tyre_n, &truth.damper_n,
+                       &truth.felt_m_s2, &truth.ground_m})
     series->assign(samples, NAN);
   truth.airborne.assign(samples, 0);
   return truth;
@@ -52,6 +52,7 @@ void record(EndTruth& truth, std::size_t i, const EndOutput& output, double grou
   truth.velocity_m_s[i] = output.velocity_m_s;
   truth.tyre_n[i] = output.tyre_n;
   truth.damper_n[i] = output.damper_n;
+  truth.felt_m_s2[i] = output.felt_m_s2;
   truth.ground_m[i] = ground_m;
   truth.airborne[i] = output.tyre_n <= 0.0;
 }

@@ -46,6 +46,16 @@ std::vector<std::string> read_names(const io::TomlTable& logger, std::string_vie
   return names;
 }
 
+SprungAccelPlan read_accel(const io::TomlTable& table) {
+  SprungAccelPlan plan;
+  plan.noise_g = table.number_or("noise_g", plan.noise_g, {.least = 0.0, .most = 100.0});
+  plan.bias_g = table.number_or("bias_g", plan.bias_g, {.least = -10.0, .most = 10.0});
+  plan.range_g =
+      table.number_or("range_g", plan.range_g, {.least = 1.0, .most = 1e4, .example = 16.0});
+  plan.decimals = static_cast<int>(table.integer("decimals", 1, 9).value_or(plan.decimals));
+  return plan;
+}
+
 }  // namespace
 
 LoggerPlan read_logger(const io::TomlTable& logger) {
@@ -60,6 +70,7 @@ LoggerPlan read_logger(const io::TomlTable& logger) {
   plan.clock_start =
       logger.number_or("clock_start", 0.0, {.least = 0.0, .most = 1e15, .example = 4.29e9});
   plan.wrap_u32 = logger.boolean("wrap_u32").value_or(false);
+  if (const auto accel = logger.table("accel")) plan.sprung_accel = read_accel(*accel);
   plan.extra_columns = read_names(logger, "extra_columns");
   plan.extra_decimals = static_cast<int>(logger.integer("extra_decimals", 0, 9).value_or(0));
   for (const auto& fault : logger.tables("fault")) plan.faults.push_back(read_fault(fault));

@@ -95,7 +95,8 @@ EndOutput step(const VehicleEnd& end, EndState& state, const Ground& ground, dou
           .spring_n = node.spring_n / inverse_ratio,
           .stop_n = stop,
           .damper_n = resisting - friction,
-          .friction_n = friction};
+          .friction_n = friction,
+          .felt_m_s2 = wheel_force / end.sprung_mass_kg};
 }
 
 EndState at_rest(const VehicleEnd& end, double ground_m) {

@@ -48,6 +48,24 @@ std::vector<AdjusterReview> review_adjusters(const damper::Damper& damper,
   return adjusters;
 }
 
+// Nothing without the accelerometer, or without the spring and masses that its reading is held
+// against.
+std::optional<sim::ApparentDamper> apparent_of(const bike::Bike& bike, const RideEnd& ride,
+                                               const std::optional<damper::Damper>& damper) {
+  if (ride.felt_m_s2.empty()) return std::nullopt;
+  const auto curve = damper ? std::optional(damper->curve()) : std::nullopt;
+  const auto end = sim::ApparentEnd::from(bike, ride.name, curve);
+  if (!end) return std::nullopt;
+  const run::Motion& motion = ride.motion;
+  return sim::apparent_damper(*end, {.interval_s = motion.time.interval_s(),
+                                     .travel_m = motion.travel_m,
+                                     .velocity_m_s = motion.velocity_m_s,
+                                     .felt_m_s2 = ride.felt_m_s2,
+                                     .counted = ride.counted,
+                                     .velocity_noise_m_s = motion.velocity_noise_m_s,
+                                     .cutoff_hz = motion.cutoff_hz});
+}
+
 }  // namespace
 
 std::optional<damper::Damper> damper_of(const bike::Bike& bike, bike::EndName name) {
@@ -112,6 +130,7 @@ EndReview review_end(const bike::Bike& bike, const RideEnd& ride, const bike::Sp
     review.adjusters = review_adjusters(*damper, review.bands);
     review.damper_assumed = damper->assumed();
   }
+  review.apparent = apparent_of(bike, ride, damper);
   return review;
 }
 

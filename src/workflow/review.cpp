@@ -1,5 +1,7 @@
 #include "clickwise/workflow/review.hpp"
 
+#include <fmt/format.h>
+
 #include "clickwise/bike/bike_file.hpp"
 #include "clickwise/core/parallel.hpp"
 #include "clickwise/events/airtime.hpp"
@@ -51,6 +53,10 @@ Review review(const ReviewOptions& options) {
     result.ends[i] =
         review_end(ride.bike, ride.ends[i], options.splits.end(ride.ends[i].name), dampers[i]);
   });
+  for (const EndReview& end : result.ends)
+    if (end.apparent && !end.apparent->problem.empty())
+      result.notes.push_back(
+          fmt::format("{} from the ride alone: {}", bike::part(end.name), end.apparent->problem));
   result.airtimes = airtimes(ride);
   if (ride.ends.size() == 2 && ride.ends[0].riding_s > 0.0 && ride.ends[1].riding_s > 0.0)
     result.front_rear = front_beside_rear(ride, result.ends);

@@ -3,6 +3,7 @@
 #include <fmt/format.h>
 
 #include <algorithm>
+#include <array>
 #include <utility>
 
 #include "clickwise/bike/bike_file.hpp"
@@ -10,17 +11,25 @@
 #include "clickwise/logs/text_log.hpp"
 #include "clickwise/motion/potentiometer.hpp"
 #include "clickwise/motion/riding.hpp"
+#include "clickwise/motion/sprung_accel.hpp"
 
 namespace clickwise::workflow {
 
 namespace {
 
-// The columns a review reads: each end's sensor, then the speed where there is one.
+bool has_sprung_accel(const bike::Bike& bike, bike::EndName name) {
+  return bike.end(name) && bike.end(name)->sprung_accel;
+}
+
+// The columns a review reads: each end's sensor, then the speed where there is one, then the
+// accelerometers of the sprung sides.
 std::vector<bike::ColumnRef> wanted_columns(const bike::Bike& bike) {
   std::vector<bike::ColumnRef> columns;
   for (const bike::EndName name : bike::both_ends)
     if (bike.end(name)) columns.push_back(bike.end(name)->sensor.column);
   if (bike.log.speed) columns.push_back(bike.log.speed->column);
+  for (const bike::EndName name : bike::both_ends)
+    if (has_sprung_accel(bike, name)) columns.push_back(bike.end(name)->sprung_accel->column);
   return columns;
 }
 
@@ -29,6 +38,20 @@ std::vector<bike::EndName> ends_of(const bike::Bike& bike) {
   for (const bike::EndName name : bike::both_ends)
     if (bike.end(name)) names.push_back(name);
   return names;
+}
+
+using SprungAccels = std::array<motion::SprungAccelMotion, 2>;  // front, rear
+
+// They leave the recording before the travel sensors are judged: their noise is no sign that a
+// travel sensor is stuck.
+SprungAccels take_sprung_accels(const bike::Bike& bike, const motion::UniformClock& clock,
+                                run::Recording& recording) {
+  SprungAccels taken;
+  for (const bike::EndName name : {bike::EndName::rear, bike::EndName::front})
+    if (has_sprung_accel(bike, name))
+      taken[name == bike::EndName::rear] =
+          motion::take_sprung_accel(recording, *bike.end(name)->sprung_accel, clock);
+  return taken;
 }
 
 std::vector<double> speed_on_base(const bike::Bike& bike, const run::Recording& recording,
@@ -77,6 +100,10 @@ void refuse_shared_columns(const bike::Bike& bike) {
   for (const bike::EndName name : bike::both_ends)
     if (bike.end(name))
       take(std::string(bike::to_string(name)) + ".sensor", bike.end(name)->sensor.column);
+  for (const bike::EndName name : bike::both_ends)
+    if (has_sprung_accel(bike, name))
+      take(std::string(bike::to_string(name)) + ".sprung_accel",
+           bike.end(name)->sprung_accel->column);
 }
 
 void refuse_impossible_rate(double rate_hz, const bike::Bike& bike, const std::string& path) {
@@ -127,7 +154,7 @@ Ride load_ride(const RideOptions& options) {
   Ride ride;
   ride.bike = bike::read_bike_file(options.bike_path);
   refuse_shared_columns(ride.bike);
-  const run::Recording recording =
+  run::Recording recording =
       logs::read_text_log(options.log_path, ride.bike.log, wanted_columns(ride.bike));
   const motion::UniformClock clock = motion::uniform_clock(recording);
   refuse_impossible_rate(clock.base.rate_hz, ride.bike, options.log_path);
@@ -136,6 +163,7 @@ Ride load_ride(const RideOptions& options) {
   ride.log.rate_hz = clock.base.rate_hz;
   ride.log.samples = recording.t_s.size();
   ride.log.faults = recording.faults;
+  SprungAccels accels = take_sprung_accels(ride.bike, clock, recording);
   ride.notes = recording.notes;
 
   const std::vector<bike::EndName> names = ends_of(ride.bike);
@@ -153,7 +181,10 @@ Ride load_ride(const RideOptions& options) {
   for (std::size_t i = 0; i < names.size(); ++i) {
     ride.log.faults.merge(motions[i].faults);
     ride.notes.insert(ride.notes.end(), motions[i].notes.begin(), motions[i].notes.end());
-    ride.ends.push_back({names[i], std::move(motions[i].motion), {}, 0.0});
+    motion::SprungAccelMotion& accel = accels[names[i] == bike::EndName::rear];
+    ride.log.faults.merge(accel.faults);
+    ride.ends.push_back(
+        {names[i], std::move(motions[i].motion), {}, 0.0, std::move(accel.felt_m_s2)});
     leave_out_nonsense(*ride.bike.end(names[i]), ride.ends.back(), ride.log.faults, ride.notes);
   }
   find_riding(speed_m_s, ride);

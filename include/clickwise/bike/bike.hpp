@@ -139,6 +139,17 @@ struct Potentiometer {
   core::Polyline travel_m;  // over the reading, increasing x; travel may rise or fall with it
 };
 
+// An accelerometer on the sprung side above the end: what it feels (specific force, +1 g at rest)
+// upwards, in the wheel's direction of travel.
+struct SprungAccel {
+  ColumnRef column;
+  bool in_g = true;   // else m/s^2
+  bool is_up = true;  // reads +1 g at rest; else -1 g
+
+  // m/s^2 felt, for each unit read; its sign by is_up.
+  double m_s2_per_unit() const;
+};
+
 struct Tyre {
   double stiffness_n_m = 90e3;
   double damping_n_s_m = 150.0;
@@ -159,6 +170,7 @@ struct End {
   double bottom_out_within_m = 4e-3;
   Split split;
   Potentiometer sensor;
+  std::optional<SprungAccel> sprung_accel;
   std::optional<Spring> spring;
   std::optional<Damper> damper;
   core::Place damper_place;  // of its table, for messages
@@ -174,7 +186,7 @@ struct Aims {
   double top_outs_per_minute = 25.0;     // at most
   double body_damping_low = 0.20;        // damping ratio of the body on this end, at least
   double harsh_force_ratio = 3.0;        // damper force at p95 over static load, at most
-  double held_share = 0.45;                   // of riding time standing still, at most
+  double held_share = 0.45;              // of riding time standing still, at most
   double balance_share = 0.06;           // |front - rear| of mean travel over stroke, at most
 };
 

@@ -22,6 +22,14 @@ struct PlannedFault {
   double counts = 1500.0;    // height of a spike; its sign is kept, the converter's range clips it
 };
 
+// What the accelerometers on the sprung sides do to what they feel.
+struct SprungAccelPlan {
+  double noise_g = 0.0;  // one standard deviation of a reading
+  double bias_g = 0.0;
+  double range_g = 64.0;  // readings are clipped to it, either way
+  int decimals = 4;       // of the readings, in the bike file's unit
+};
+
 struct LoggerPlan {
   double rate_hz = 1000.0;
   int adc_bits = 12;
@@ -30,6 +38,7 @@ struct LoggerPlan {
   int time_decimals = 0;      // of the stamps, in the bike file's time unit
   double clock_start = 0.0;   // first stamp, in that unit
   bool wrap_u32 = false;      // stamps are taken modulo 2^32 of that unit
+  SprungAccelPlan sprung_accel;
   std::vector<std::string> extra_columns;  // further readings that nobody asked for: slow noise
   int extra_decimals = 0;                  // of the further readings
   std::vector<PlannedFault> faults;
@@ -37,11 +46,11 @@ struct LoggerPlan {
 };
 
 // Writes the log of the ride as comma-separated text with a header (none where the bike file names
-// every column by number), piece by piece into `sink`. Columns: the bike file's time, sensors and
-// speed, then the extra ones. Readings are the calibration turned round, with noise, rounded, and
-// clipped to the converter's range; the truth is read between its samples by its own velocity.
-// Throws core::JobError when a fault names a channel that the log does not have, or the columns
-// cannot be laid out.
+// every column by number), piece by piece into `sink`. Columns: the bike file's time, sensors,
+// speed and accelerometers of the sprung sides, then the extra ones. Readings are the calibration
+// turned round, with noise, rounded, and clipped to the converter's range; the truth is read
+// between its samples by its own velocity. Throws core::JobError when a fault names a channel that
+// the log does not have, or the columns cannot be laid out.
 void write_log(const bike::Bike& bike, const LoggerPlan& plan, const Truth& truth,
                const std::function<void(std::string_view)>& sink);
 

@@ -21,7 +21,8 @@ struct EndTruth {
   std::vector<double> velocity_m_s;
   std::vector<double> tyre_n;
   std::vector<double> damper_n;
-  std::vector<double> ground_m;  // under the wheel: the axle's path, less the radius
+  std::vector<double> felt_m_s2;  // specific force of the sprung mass: +g at rest
+  std::vector<double> ground_m;   // under the wheel: the axle's path, less the radius
   std::vector<std::uint8_t> airborne;
   std::vector<run::EndStop> bottom_outs;  // contract section 1, found at the integrator's step
 };

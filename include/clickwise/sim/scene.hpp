@@ -29,6 +29,7 @@ namespace clickwise::sim {
 //              compression: depth_m, length_m
 //   [logger]   rate_hz = 1000, adc_bits = 12, noise_counts = 0, jitter = 0, time_decimals = 0,
 //              clock_start = 0, wrap_u32 = false, extra_columns = [],
+//              accel = { noise_g = 0, bias_g = 0, range_g = 64, decimals = 4 },
 //              extra_decimals = 0
 //   [[logger.fault]]     kind (those of log.faults), at_s; seconds (gap, stuck, saturated,
 //   missing);

@@ -60,6 +60,7 @@ struct EndOutput {
   double stop_n = 0.0;
   double damper_n = 0.0;    // without friction
   double friction_n = 0.0;  // up to F_c either way; while v = 0, what holds the shaft still
+  double felt_m_s2 = 0.0;   // specific force of the sprung mass, z̈_s + g = F_w / m_s
 };
 
 struct Ground {

@@ -10,6 +10,7 @@
 #include "clickwise/bands/velocity.hpp"
 #include "clickwise/damper/reach.hpp"
 #include "clickwise/run/event.hpp"
+#include "clickwise/sim/apparent.hpp"
 #include "clickwise/workflow/ride.hpp"
 #include "clickwise/workflow/splits.hpp"
 
@@ -40,6 +41,7 @@ struct EndReview {
   std::vector<run::HitTrain> trains;
   std::vector<AdjusterReview> adjusters;  // empty without a damper
   bool damper_assumed = false;
+  std::optional<sim::ApparentDamper> apparent;  // empty without an accelerometer on the sprung side
 };
 
 // Front beside rear; only when both ends were logged.

@@ -25,8 +25,9 @@ struct LogSummary {
 struct RideEnd {
   bike::EndName name = bike::EndName::front;
   run::Motion motion;
-  std::vector<std::uint8_t> counted;  // riding and valid
-  double riding_s = 0.0;              // of this end
+  std::vector<std::uint8_t> counted;   // riding and valid
+  double riding_s = 0.0;               // of this end
+  std::vector<double> felt_m_s2 = {};  // sprung side's accelerometer, NaN where not known; or empty
 };
 
 struct Ride {
