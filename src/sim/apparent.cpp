@@ -18,7 +18,10 @@ namespace {
 constexpr double gravity = core::standard_gravity_m_s2;
 constexpr double normal_95 = 1.6448536269514722;
 constexpr double least_riding_s = 10.0;
-constexpr double follows_share = 0.5;   // of the measured force's variance, explained
+constexpr double follows_share = 0.5;  // of the measured force's variance, explained
+// What smoothing of the travel and straight lines between points leave, one deviation: measured on
+// invented rides (docs/method/ride-alone.md, A5).
+constexpr double shape_share = 0.012, shape_n = 2.0;
 constexpr double rest_tolerance = 0.3;  // of g, of the long mean: leaning axis, zero, gain
 
 void require_sizes(const SprungRide& ride) {
@@ -96,13 +99,14 @@ std::vector<ApparentPoint> points(const ApparentEnd& end, const ApparentFit& fit
     point.speed_m_s = knots.speed_m_s[d][k];
     point.seconds = knots.seconds[d][k];
     const Eigen::Index i = offset + static_cast<Eigen::Index>(k);
-    double force = fit.theta[i] / fit.theta[share_index];
+    const double force = fit.theta[i] / fit.theta[share_index];
     if (end.curve) {
       const auto& law = d == 0 ? end.curve->compression : end.curve->rebound;
       point.bike_file_n = law.force_n(point.speed_m_s);
-      force += *point.bike_file_n;
     }
-    point.force_n = bounded(force, ratio_deviation(fit, i), knots.blocks[d][k] - 1.0);
+    const double shape = shape_n + shape_share * std::abs(force);
+    point.force_n =
+        bounded(force, std::hypot(ratio_deviation(fit, i), shape), knots.blocks[d][k] - 1.0);
     all.push_back(point);
   }
   return all;
@@ -115,7 +119,7 @@ void compare_accelerations(const ApparentEnd& end, const SprungRide& ride,
   double rows = 0.0, sum = 0.0, squares = 0.0, model = 0.0, apparent = 0.0;
   each_row(ride, felt, samples, knots, [&](const ApparentRow& row) {
     const double measured = row.load_n * row.felt_per_n;
-    const double said_n = row.held_n + end.friction_n * row.sign;
+    const double said_n = row.held_n + row.damper_n + end.friction_n * row.sign;
     rows += 1.0;
     sum += measured;
     squares += measured * measured;

@@ -8,7 +8,7 @@
 
 namespace clickwise::sim {
 
-// The unknowns of (A3): the spring's share, the offset, friction, then the knots' deviations.
+// The unknowns of (A3): the spring's share, the offset, friction, then the forces at the knots.
 inline constexpr Eigen::Index share_index = 0, offset_index = 1, friction_index = 2,
                               first_knot_index = 3;
 

@@ -55,15 +55,15 @@ Realigned realign(const SprungRide& ride, const ApparentSamples& samples, const 
                   const ApparentOptions& options) {
   Realigned result{{ride.felt_m_s2.begin(), ride.felt_m_s2.end()}, 0.0};
   const int furthest = static_cast<int>(std::floor(options.longest_lag_s / ride.interval_s));
-  double lag = 0.0;
   for (int round = 0; round < rounds && furthest > 0; ++round) {
     const auto fit = fit_apparent(ride, result.felt_m_s2, samples, knots, true);
     if (fit.rows == 0) return result;
     std::vector<double> misfits;
     for (int k = -furthest; k <= furthest; ++k)
       misfits.push_back(misfit(ride, ride.felt_m_s2, samples, knots, fit, k));
-    lag = best_lag(misfits, furthest);
-    if (std::abs(lag) < least_lag_samples)
+    const double lag = best_lag(misfits, furthest);
+    const double size = std::abs(lag);
+    if (size < least_lag_samples || size >= furthest)
       return {{ride.felt_m_s2.begin(), ride.felt_m_s2.end()}, 0.0};
     result.felt_m_s2 = shifted(ride.felt_m_s2, lag);
     result.lag_s = lag * ride.interval_s;

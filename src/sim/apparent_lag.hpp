@@ -11,7 +11,7 @@ struct Realigned {
 };
 
 // The lag at which the measured acceleration lies nearest to the fitted one, within a fraction of a
-// sample; below half a sample it is taken as none.
+// sample; below half a sample, or at the furthest shift (a loop, no lag), it is taken as none.
 Realigned realign(const SprungRide& ride, const ApparentSamples& samples, const Knots& knots,
                   const ApparentOptions& options);
 

@@ -14,7 +14,7 @@ namespace {
 constexpr std::array<double, 18> candidate_knots{0.05, 0.1, 0.15, 0.2, 0.27, 0.35, 0.45, 0.6, 0.8,
                                                  1.0,  1.3, 1.7,  2.2, 2.8,  3.5,  4.5,  6.0, 8.0};
 constexpr double bleed_up_to_m_s = 0.2;  // a bleed's force goes with the square of the speed
-constexpr double still_noises = 3.0;  // slower than this many noises: the direction is not known
+constexpr double still_noises = 3.0;     // slower than this many noises: the direction is not known
 constexpr double blocks_wanted = 24.0;
 constexpr double shortest_block_s = 1.0, longest_block_s = 5.0;
 constexpr double fewest_blocks = 4.0;
@@ -60,8 +60,8 @@ std::size_t direction_of(double velocity_m_s) {
   return velocity_m_s >= 0.0 ? 0 : 1;
 }
 
-// The hat functions over the knots of one direction, straight in v^2 where a bleed rules, in v above;
-// that of standstill is left out.
+// The hat functions over the knots of one direction, straight in v^2 where a bleed rules, in v
+// above; that of standstill is left out.
 class Hats {
 public:
   explicit Hats(const std::vector<double>& speed_m_s) : speed_(speed_m_s) {}
@@ -179,7 +179,7 @@ void each_row(const SprungRide& ride, std::span<const double> felt_m_s2,
     if (filled == 0) row = {.sign = sign, .block = samples.block[i], .first = i};
     const double weight = 1.0 / static_cast<double>(length);
     row.load_n += weight * samples.load_kg[i] * felt_m_s2[i];
-    row.held_n += weight * (samples.spring_n[i] + samples.damper_n[i]);
+    row.held_n += weight * samples.spring_n[i];
     row.damper_n += weight * samples.damper_n[i];
     row.felt_per_n += weight / samples.load_kg[i];
     add_hats(hats[d], offset[d], std::abs(v), weight * sign, row);

@@ -39,12 +39,12 @@ Knots choose_knots(const SprungRide& ride, const ApparentSamples& samples,
 // One short window: y = share held + offset + friction sign + sum hats theta, (A3).
 struct ApparentRow {
   double load_n = 0.0;    // y: measured, at the shaft
-  double held_n = 0.0;    // spring and the bike file's damper
-  double damper_n = 0.0;  // the latter alone
+  double held_n = 0.0;    // by the spring
+  double damper_n = 0.0;  // what the bike file says of the damper
   double sign = 1.0;      // of the velocity
   double felt_per_n = 0.0;
   int block = 0;
-  std::size_t first = 0;                             // sample in the middle of the window
+  std::size_t first = 0;                                  // sample in the middle of the window
   std::vector<std::pair<std::size_t, double>> hats = {};  // index over all knots, signed weight
 };
 

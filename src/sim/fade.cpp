@@ -25,7 +25,7 @@ struct Windows {
 };
 
 double damper_part(const ApparentFit& fit, const ApparentRow& row) {
-  double force = fit.theta[share_index] * row.damper_n;
+  double force = 0.0;
   for (const auto& [knot, weight] : row.hats)
     force += fit.theta[first_knot_index + static_cast<Eigen::Index>(knot)] * weight;
   return force;

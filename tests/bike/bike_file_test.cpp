@@ -90,10 +90,20 @@ TEST_CASE("the minimal file reads, and is told what more would bring", "[bike]")
   CHECK_THAT(all, !Contains("rear.damper"));
 }
 
+TEST_CASE("an accelerometer on the sprung side is read, up where nothing is said", "[bike]") {
+  const bike::SprungAccel down = *larch().front->sprung_accel;
+  CHECK(down.column.name == "fork_az");
+  CHECK(down.m_s2_per_unit() == -1.0);
+  const auto up = parse_bike(replaced(larch_text, "unit = \"m/s2\", up = -1", "unit = \"g\""), "l");
+  CHECK(up.front->sprung_accel->m_s2_per_unit() == 9.80665);
+  CHECK(!up.rear->sprung_accel);
+}
+
 TEST_CASE("what a whole file leaves out is only what it leaves out", "[bike]") {
   std::string all;
   for (const std::string& sentence : bike::what_is_missing(larch())) all += sentence + "\n";
-  CHECK_THAT(all, Contains("rear.tyre") && Contains("rear.damper is assumed"));
+  CHECK_THAT(all, Contains("rear.tyre") && Contains("rear.damper is assumed") &&
+                      Contains("rear.sprung_accel"));
   CHECK_THAT(all, !Contains("front.") && !Contains("rider") && !Contains("log."));
 }
 

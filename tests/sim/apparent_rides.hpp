@@ -49,8 +49,8 @@ inline sim::EndTruth ride(const replay_rides::Ride& course,
     sim::EndOutput output;
     const double advance = distance[i + 1] - distance[i];
     for (int k = 1; k <= steps; ++k)
-      output = sim::step(end, state, course.path.at(distance[i] + advance * k / steps, 1e3 * advance),
-                         step_s);
+      output = sim::step(end, state,
+                         course.path.at(distance[i] + advance * k / steps, 1e3 * advance), step_s);
     truth.travel_m.push_back(output.travel_m);
     truth.velocity_m_s.push_back(output.velocity_m_s);
     truth.felt_m_s2.push_back(output.felt_m_s2);
@@ -91,8 +91,8 @@ inline Logged logged(const sim::EndTruth& truth, double stroke_m, std::uint64_t 
 
 // The bike file's view of the end, right unless changed.
 inline sim::ApparentEnd known(const replay_rides::Parts& parts, bool with_curve = true) {
-  sim::ApparentEnd end{parts.sprung_kg, parts.end.stroke_m, parts.end.friction_n, parts.end.ratio,
-                       *parts.end.spring, std::nullopt};
+  sim::ApparentEnd end{parts.sprung_kg, parts.end.stroke_m, parts.end.friction_n,
+                       parts.end.ratio, *parts.end.spring,  std::nullopt};
   if (with_curve) end.curve = damper::Damper(parts.damper).curve();
   return end;
 }

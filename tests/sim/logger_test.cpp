@@ -211,3 +211,46 @@ TEST_CASE("a folder that cannot be written is a job error", "[sim]") {
   out.write("ride", "a file where a folder should be");
   CHECK_THROWS_AS(write_ride(logged.scene, logged.truth, out.file("ride")), core::JobError);
 }
+
+TEST_CASE("an accelerometer on the sprung side logs what it feels", "[sim]") {
+  Logged logged;
+  logged.scene.bike.front->sprung_accel = bike::SprungAccel{{"fork_az", 0}, true, true};
+  logged.scene.bike.rear->sprung_accel = bike::SprungAccel{{"shock_az", 0}, false, false};
+  const auto rows = logged.rows();
+  CHECK(rows[0] == std::vector<std::string>{"t_us", "fork_adc", "shock_adc", "wheel_kmh", "fork_az",
+                                            "shock_az"});
+  // At rest; the model starts within its friction.
+  CHECK(std::stod(rows[100][4]) == Approx(1.0).margin(0.01));
+  CHECK(std::stod(rows[100][5]) == Approx(-9.80665).margin(0.1));
+  // 500 Hz from 1 kHz truth: every other sample, to four decimals.
+  for (std::size_t i = 1; i < rows.size(); i += 97)
+    CHECK(std::stod(rows[i][4]) * 9.80665 ==
+          Approx(logged.truth.front->felt_m_s2[2 * (i - 1)]).margin(6e-4));
+}
+
+TEST_CASE("the other columns do not know that an accelerometer is logged", "[sim]") {
+  Logged logged;
+  logged.scene.logger.noise_counts = 1.5;
+  const auto without = logged.rows();
+  logged.scene.bike.front->sprung_accel = bike::SprungAccel{{"fork_az", 0}, true, true};
+  logged.scene.logger.sprung_accel.noise_g = 0.1;
+  const auto with = logged.rows();
+  REQUIRE(with.size() == without.size());
+  for (std::size_t i = 0; i < with.size(); i += 101)
+    for (std::size_t c = 0; c < 4; ++c) CHECK(with[i][c] == without[i][c]);
+}
+
+TEST_CASE("an accelerometer has a zero, a noise and a range", "[sim]") {
+  Logged logged;
+  logged.scene.bike.front->sprung_accel = bike::SprungAccel{{"fork_az", 0}, true, true};
+  logged.scene.logger.sprung_accel = {.bias_g = 0.1, .range_g = 2.0, .decimals = 2};
+  double least = 9.0, most = -9.0;
+  const auto rows = logged.rows();
+  for (std::size_t i = 1; i < rows.size(); ++i) {
+    least = std::min(least, std::stod(rows[i][4]));
+    most = std::max(most, std::stod(rows[i][4]));
+  }
+  CHECK(std::stod(rows[100][4]) == Approx(1.1).margin(0.01));
+  CHECK(most == 2.0);
+  CHECK(least < 0.5);
+}

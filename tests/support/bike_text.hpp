@@ -33,6 +33,7 @@ wheelbase_mm = 1245.0
 stroke_mm = 170.0
 unsprung_mass_kg = 2.9
 friction_n = 15.0
+sprung_accel = { column = "fork_az", unit = "m/s2", up = -1 }
 tyre = { stiffness_n_mm = 90.0, damping_n_s_m = 150.0 }
 ratio = 1.0
 bottom_out = { within_mm = 4.0 }
