@@ -22,6 +22,7 @@ constexpr double follows_share = 0.5;  // of the measured force's variance, expl
 // What smoothing of the travel and straight lines between points leave, one deviation: measured on
 // invented rides (docs/method/ride-alone.md, A5).
 constexpr double shape_share = 0.012, shape_n = 2.0;
+constexpr double first_stretch_share = 0.15;
 constexpr double rest_tolerance = 0.3;  // of g, of the long mean: leaning axis, zero, gain
 
 void require_sizes(const SprungRide& ride) {
@@ -112,6 +113,15 @@ std::vector<ApparentPoint> points(const ApparentEnd& end, const ApparentFit& fit
   return all;
 }
 
+// What the first stretch, if it does not quite go with v^2, may take from the friction: a
+// deviation.
+double first_stretch_n(const ApparentDamper& damper) {
+  double sum = 0.0;
+  for (const auto* points : {&damper.compression, &damper.rebound})
+    if (!points->empty()) sum += std::abs(points->front().force_n.value);
+  return first_stretch_share * 0.5 * sum;
+}
+
 // The measured acceleration beside what the bike file's model and the apparent damper say of it.
 void compare_accelerations(const ApparentEnd& end, const SprungRide& ride,
                            std::span<const double> felt, const ApparentSamples& samples,
@@ -172,7 +182,7 @@ ApparentDamper apparent_damper(const ApparentEnd& end, const SprungRide& ride,
   result.problem = wrong_reading(result.mean_felt_m_s2);
   if (!result.problem.empty()) return result;
   const ApparentSamples samples = prepare(end, ride, options);
-  const Knots knots = choose_knots(ride, samples, options);
+  const Knots knots = choose_knots(end, ride, samples, options);
   result.used_s = used_seconds(ride, samples);
   const Realigned felt = realign(ride, samples, knots, options);
   result.lag_s = felt.lag_s;
@@ -188,10 +198,12 @@ ApparentDamper apparent_damper(const ApparentEnd& end, const SprungRide& ride,
     return result;
   }
   result.offset_n = fit.theta[offset_index];
-  result.friction_n = bounded(fit.theta[friction_index] / fit.theta[share_index],
-                              ratio_deviation(fit, friction_index), samples.blocks - 1.0);
   result.compression = points(end, fit, knots, 0);
   result.rebound = points(end, fit, knots, 1);
+  result.friction_n =
+      bounded(fit.theta[friction_index] / fit.theta[share_index],
+              std::hypot(ratio_deviation(fit, friction_index), first_stretch_n(result)),
+              samples.blocks - 1.0);
   compare_accelerations(end, ride, felt.felt_m_s2, samples, knots, fit, result);
   result.fade = find_fade(ride, felt.felt_m_s2, samples, knots, fit, options);
   return result;

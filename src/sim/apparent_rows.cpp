@@ -10,14 +10,19 @@ namespace clickwise::sim {
 
 namespace {
 
-// Denser where curves bend: m/s.
-constexpr std::array<double, 18> candidate_knots{0.05, 0.1, 0.15, 0.2, 0.27, 0.35, 0.45, 0.6, 0.8,
-                                                 1.0,  1.3, 1.7,  2.2, 2.8,  3.5,  4.5,  6.0, 8.0};
-constexpr double bleed_up_to_m_s = 0.2;  // a bleed's force goes with the square of the speed
-constexpr double still_noises = 3.0;     // slower than this many noises: the direction is not known
+// At the wheel, m/s; denser where curves bend.
+constexpr std::array<double, 20> wheel_knots_m_s{0.03, 0.06, 0.09, 0.12, 0.16, 0.2, 0.27,
+                                                 0.35, 0.45, 0.6,  0.8,  1.0,  1.3, 1.7,
+                                                 2.2,  2.8,  3.5,  4.5,  6.0,  8.0};
+constexpr std::size_t bleed_knots = 6;  // up to here force goes about with the speed's square
+constexpr double still_noises = 3.0;    // slower than this many noises: the direction is not known
 constexpr double blocks_wanted = 24.0;
 constexpr double shortest_block_s = 1.0, longest_block_s = 5.0;
 constexpr double fewest_blocks = 4.0;
+
+double middle_ratio(const ApparentEnd& end) {
+  return end.ratio(0.5 * end.stroke_m);
+}
 
 void mask_stops(const ApparentEnd& end, const SprungRide& ride, const ApparentOptions& options,
                 std::vector<std::uint8_t>& usable) {
@@ -35,7 +40,8 @@ void mask_stops(const ApparentEnd& end, const SprungRide& ride, const ApparentOp
 
 std::vector<std::uint8_t> usable_samples(const ApparentEnd& end, const SprungRide& ride,
                                          const ApparentOptions& options) {
-  const double still = std::max(options.still_m_s, still_noises * ride.velocity_noise_m_s);
+  const double still =
+      std::max(options.still_m_s / middle_ratio(end), still_noises * ride.velocity_noise_m_s);
   std::vector<std::uint8_t> usable(ride.travel_m.size());
   for (std::size_t i = 0; i < usable.size(); ++i)
     usable[i] = ride.counted[i] != 0 && std::isfinite(ride.felt_m_s2[i]) &&
@@ -74,7 +80,7 @@ public:
     const auto k = static_cast<std::size_t>(above - speed_.begin());
     const double low = k > 0 ? speed_[k - 1] : 0.0;
     const double high = speed_[k];
-    const double part = high <= bleed_up_to_m_s
+    const double part = k < bleed_knots
                             ? (speed_m_s * speed_m_s - low * low) / (high * high - low * low)
                             : (speed_m_s - low) / (high - low);
     add(k, part);
@@ -136,9 +142,10 @@ ApparentSamples prepare(const ApparentEnd& end, const SprungRide& ride,
   return samples;
 }
 
-Knots choose_knots(const SprungRide& ride, const ApparentSamples& samples,
+Knots choose_knots(const ApparentEnd& end, const SprungRide& ride, const ApparentSamples& samples,
                    const ApparentOptions& options) {
-  const std::vector<double> candidates(candidate_knots.begin(), candidate_knots.end());
+  std::vector<double> candidates(wheel_knots_m_s.begin(), wheel_knots_m_s.end());
+  for (double& knot : candidates) knot /= middle_ratio(end);
   const Hats hats(candidates);
   using Seconds = std::vector<std::vector<double>>;
   const auto blocks = static_cast<std::size_t>(samples.blocks);
@@ -149,7 +156,9 @@ Knots choose_knots(const SprungRide& ride, const ApparentSamples& samples,
     if (samples.usable[i] == 0 || !hats.covers(speed)) continue;
     Seconds& of = seconds[direction_of(ride.velocity_m_s[i])];
     const auto block = static_cast<std::size_t>(samples.block[i]);
-    hats.weigh(speed, [&](std::size_t k, double part) { of[k][block] += part * ride.interval_s; });
+    hats.weigh(speed, [&](std::size_t k, double part) {
+      if (part >= 0.5) of[k][block] += ride.interval_s;
+    });
   }
   Knots knots;
   for (const std::size_t d : {0u, 1u}) keep_filled(candidates, seconds[d], options, d, knots);

@@ -33,7 +33,7 @@ struct Knots {
   std::size_t count() const { return speed_m_s[0].size() + speed_m_s[1].size(); }
 };
 
-Knots choose_knots(const SprungRide& ride, const ApparentSamples& samples,
+Knots choose_knots(const ApparentEnd& end, const SprungRide& ride, const ApparentSamples& samples,
                    const ApparentOptions& options);
 
 // One short window: y = share held + offset + friction sign + sum hats theta, (A3).

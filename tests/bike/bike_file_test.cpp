@@ -38,7 +38,7 @@ TEST_CASE("a whole bike file is read into SI", "[bike]") {
   CHECK(damper.compression.valve->value() == 380.0);
   CHECK(damper.rebound.fixed_valve_n == 90.0);
   CHECK(damper.rebound.port_n_s2_m2 == 30.0);
-  CHECK(b.front->damper_place.line == 28);
+  CHECK(b.front->damper_place.line == 29);
   CHECK(b.aims.travel_used_share == 0.85);
 }
 

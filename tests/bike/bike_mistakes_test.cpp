@@ -100,7 +100,7 @@ TEST_CASE("mistakes in masses and ends are refused where they stand", "[bike]") 
        "did you mean stroke_mm?"},
       {"sprung_accel", "@sprung_acel", "front.sprung_acel: unknown key",
        "did you mean sprung_accel?"},
-      {"up = -1", "@upward = -1", "front.sprung_accel.upward: unknown key", "did you mean up"},
+      {"up = -1", "@upward = -1", "front.sprung_accel.upward: unknown key", "remove it"},
       {"up = -1", "up = @0", "front.sprung_accel.up = 0", "write up = 1 where"},
       {"up = -1", "up = @2", "front.sprung_accel.up = 2", "-1"},
       {"unit = \"m/s2\"", "unit = @\"ft/s2\"", "front.sprung_accel.unit = \"ft/s2\"", "\"m/s2\""},

@@ -40,10 +40,10 @@ struct SprungRide {
 };
 
 struct ApparentOptions {
-  double still_m_s = 0.02;      // slower: friction may hold with any force
+  double still_m_s = 0.012;     // at the wheel; slower: friction may hold with any force
   double margin_m = 2e-3;       // this close to the ends of the stroke the stops may carry
   double guard_s = 5e-3;        // and this long before and after
-  double least_s = 0.3;         // a point of the curve needs so much riding around it
+  double least_s = 0.3;         // a point of the curve needs so much riding nearest to it
   double longest_lag_s = 0.01;  // of the accelerometer against the travel sensor, either way
   double spring_told = 0.05;    // half width of the spring's share up to which it is believed
   double least_fade = 0.08;     // smaller changes over a ride are not called fade
@@ -59,7 +59,7 @@ struct Bounded {
 struct ApparentPoint {
   double speed_m_s = 0.0;  // > 0, in its direction
   Bounded force_n;         // without friction, positive resists
-  double seconds = 0.0;    // of riding that it rests on
+  double seconds = 0.0;    // of riding nearest to it
   std::optional<double> bike_file_n;
 };
 
