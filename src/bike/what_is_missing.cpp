@@ -49,6 +49,12 @@ void missing_at(const End& end, EndName name, std::vector<Missing>& all) {
 }
 
 void missing_of_bike(const Bike& bike, std::vector<Missing>& all) {
+  for (const EndName name : both_ends)
+    if (bike.end(name) && bike.end(name)->sprung_accel &&
+        !(bike.end(name)->spring && bike.sprung_mass_kg(name)))
+      all.push_back({2, fmt::format("{0}.sprung_accel is weighed against the spring and the sprung "
+                                    "mass: {0}.spring and the masses bring the damper as ridden",
+                                    to_string(name))});
   if (!bike.rider_mass_kg || !bike.chassis_mass_kg || !bike.front_share)
     all.push_back(
         {3, fmt::format("{} would give the sprung mass, which replay, predictions and the "

@@ -25,6 +25,9 @@ constexpr double shape_share = 0.012, shape_n = 2.0;
 constexpr double first_stretch_share = 0.15;
 constexpr double rest_tolerance = 0.3;  // of g, of the long mean: leaning axis, zero, gain
 
+constexpr const char* too_little =
+    "too little riding with a usable accelerometer for a damper's curve";
+
 void require_sizes(const SprungRide& ride) {
   const std::size_t n = ride.travel_m.size();
   if (ride.velocity_m_s.size() != n || ride.felt_m_s2.size() != n || ride.counted.size() != n)
@@ -184,11 +187,15 @@ ApparentDamper apparent_damper(const ApparentEnd& end, const SprungRide& ride,
   const ApparentSamples samples = prepare(end, ride, options);
   const Knots knots = choose_knots(end, ride, samples, options);
   result.used_s = used_seconds(ride, samples);
+  if (knots.speed_m_s[0].empty() || knots.speed_m_s[1].empty()) {
+    result.problem = too_little;
+    return result;
+  }
   const Realigned felt = realign(ride, samples, knots, options);
   result.lag_s = felt.lag_s;
   const ApparentFit fit = fit_share(ride, felt.felt_m_s2, samples, knots, options, result);
   if (fit.rows == 0 || result.used_s < least_riding_s) {
-    result.problem = "too little riding with a usable accelerometer for a damper's curve";
+    result.problem = too_little;
     return result;
   }
   if (1.0 - std::pow(fit.rms_n / fit.load_rms_n, 2) < follows_share) {

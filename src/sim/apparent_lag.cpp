@@ -9,6 +9,18 @@ namespace {
 
 constexpr int rounds = 2;
 constexpr double least_lag_samples = 0.5;
+constexpr double enough_s = 60.0;  // of usable riding: a lag does not change
+
+// The samples of the ride's first stretch of usable riding.
+ApparentSamples beginning(const ApparentSamples& samples, double interval_s) {
+  ApparentSamples part = samples;
+  double usable_s = 0.0;
+  for (std::uint8_t& one : part.usable) {
+    usable_s += one * interval_s;
+    if (usable_s > enough_s) one = 0;
+  }
+  return part;
+}
 
 // felt later by so many samples, straight between them; NaN where it is not known.
 std::vector<double> shifted(std::span<const double> felt, double samples) {
@@ -54,13 +66,14 @@ double best_lag(const std::vector<double>& misfits, int furthest) {
 Realigned realign(const SprungRide& ride, const ApparentSamples& samples, const Knots& knots,
                   const ApparentOptions& options) {
   Realigned result{{ride.felt_m_s2.begin(), ride.felt_m_s2.end()}, 0.0};
+  const ApparentSamples part = beginning(samples, ride.interval_s);
   const int furthest = static_cast<int>(std::floor(options.longest_lag_s / ride.interval_s));
   for (int round = 0; round < rounds && furthest > 0; ++round) {
-    const auto fit = fit_apparent(ride, result.felt_m_s2, samples, knots, true);
+    const auto fit = fit_apparent(ride, result.felt_m_s2, part, knots, true);
     if (fit.rows == 0) return result;
     std::vector<double> misfits;
     for (int k = -furthest; k <= furthest; ++k)
-      misfits.push_back(misfit(ride, ride.felt_m_s2, samples, knots, fit, k));
+      misfits.push_back(misfit(ride, ride.felt_m_s2, part, knots, fit, k));
     const double lag = best_lag(misfits, furthest);
     const double size = std::abs(lag);
     if (size < least_lag_samples || size >= furthest)

@@ -1,5 +1,6 @@
 #include "clickwise/bike/bike_file.hpp"
 
+#include <algorithm>
 #include <catch2/catch.hpp>
 #include <random>
 
@@ -97,6 +98,11 @@ TEST_CASE("an accelerometer on the sprung side is read, up where nothing is said
   const auto up = parse_bike(replaced(larch_text, "unit = \"m/s2\", up = -1", "unit = \"g\""), "l");
   CHECK(up.front->sprung_accel->m_s2_per_unit() == 9.80665);
   CHECK(!up.rear->sprung_accel);
+  const auto massless = parse_bike(replaced(larch_text, "mass_kg = 78.0", ""), "l");
+  const auto missing = bike::what_is_missing(massless);
+  CHECK(std::any_of(missing.begin(), missing.end(), [](const std::string& sentence) {
+    return sentence.starts_with("front.sprung_accel is weighed against");
+  }));
 }
 
 TEST_CASE("what a whole file leaves out is only what it leaves out", "[bike]") {
