@@ -20,23 +20,28 @@ std::vector<Symptom> of_end(const std::vector<Symptom>& symptoms, bike::EndName 
   return own;
 }
 
-bool any_crossed(const std::vector<Symptom>& measured) {
-  return std::any_of(measured.begin(), measured.end(),
-                     [](const Symptom& symptom) { return symptom.severity > 0.0; });
+// Whether anything is off its aim by enough to act on.
+bool any_clear(const std::vector<Symptom>& crossed, double sure_enough) {
+  return std::any_of(crossed.begin(), crossed.end(),
+                     [&](const Symptom& symptom) { return symptom.certainty() >= sure_enough; });
 }
 
-// By replay where that is asked for and the bike file knows enough, by rule otherwise. A ride too
-// broken to replay is judged by rule as well.
 EndChoice choose(const EndRide& ride, const std::vector<Symptom>& measured,
-                 const std::vector<Symptom>& crossed, const AdviceOptions& options) {
-  if (!any_crossed(measured)) return {};
-  if (options.by_replay && ride.vehicle && ride.damper) {
+                 const std::vector<Symptom>& crossed, const AdviceOptions& options,
+                 std::vector<std::string>& notes) {
+  if (!any_clear(crossed, options.least_confidence)) return {};
+  if (options.by_rule) return choose_by_rule(ride, crossed, options);
+  std::string why_not = ride.no_vehicle;
+  if (ride.vehicle && ride.damper) {
     try {
       return choose_by_replay(ride, measured, options);
-    } catch (const core::JobError&) {
-      return choose_by_rule(ride, crossed, options);
+    } catch (const core::JobError& error) {
+      why_not = error.what();
     }
   }
+  if (ride.damper)
+    notes.push_back(fmt::format("{}: judged by rule, not by riding the same ground again: {}",
+                                bike::to_string(ride.name), why_not));
   return choose_by_rule(ride, crossed, options);
 }
 
@@ -56,6 +61,7 @@ std::string leave_it_words(const Advice& advice, const std::vector<EndRide>& rid
   const double counted_s = longest_counted_s(rides);
   if (counted_s < shortest_judged_s && advice.handovers.empty())
     return fmt::format("{:.1f} s of riding are too few to judge; log a whole run", counted_s);
+  if (!advice.checks.empty()) return "the bike file and the log do not agree";
   if (advice.symptoms.empty()) return "every figure is at its aim";
   const bool damper_unknown =
       std::any_of(advice.handovers.begin(), advice.handovers.end(),
@@ -76,8 +82,9 @@ Advice advise(const std::vector<EndRide>& rides, const bike::Aims& aims,
   const std::vector<Symptom> measured = measure_symptoms(rides, aims, options.seed);
   advice.symptoms = find_symptoms(measured);
   for (const EndRide& ride : rides) {
-    EndChoice choice =
-        choose(ride, of_end(measured, ride.name), of_end(advice.symptoms, ride.name), options);
+    EndChoice choice = choose(ride, of_end(measured, ride.name), of_end(advice.symptoms, ride.name),
+                              options, advice.notes);
+    if (!choice.check.empty()) advice.checks.push_back(std::move(choice.check));
     if (choice.step) advice.steps.push_back(std::move(*choice.step));
     std::move(choice.handovers.begin(), choice.handovers.end(),
               std::back_inserter(advice.handovers));

@@ -2,6 +2,7 @@
 #pragma once
 
 #include <optional>
+#include <string>
 #include <vector>
 
 #include "clickwise/advice/advise.hpp"
@@ -11,6 +12,7 @@ namespace clickwise::advice {
 struct EndChoice {
   std::optional<Step> step;
   std::vector<Handover> handovers;
+  std::string check;  // what about the bike file cannot be right; then there is nothing else
 };
 
 }  // namespace clickwise::advice

@@ -12,7 +12,8 @@ namespace clickwise::advice {
 // Mean climb per hit over the trains of a ride, m, weighted by hits; 0 without trains.
 double climb_m_per_hit(const std::vector<run::HitTrain>& trains);
 
-// Modelled climb per hit for each setting, [draw][setting], over the valid stretches of the ride.
+// Modelled climb per hit for each setting, [draw][setting], over the stretches
+// around the ride's own trains.
 std::vector<std::vector<double>> modelled_climbs(const EndRide& ride,
                                                  const std::vector<sim::VehicleEnd>& settings,
                                                  const std::vector<sim::Draw>& draws);

@@ -4,206 +4,27 @@
 
 #include <algorithm>
 #include <cmath>
-#include <numeric>
+#include <cstdlib>
 
-#include "clickwise/advice/find_symptoms.hpp"
-#include "clickwise/core/units.hpp"
-#include "packing.hpp"
+#include "outcomes.hpp"
 #include "rules.hpp"
-#include "trials.hpp"
-#include "yardstick.hpp"
 
 namespace clickwise::advice {
 
 namespace {
 
-// A symptom counts as made clearly worse when its severity rises by more than this.
+// A symptom counts as made clearly worse when its severity rises by more than this, and is worth
+// watching when it rises by more than that.
 constexpr double clearly_worse = 1.0;
+constexpr double worth_watching = 0.25;
 // A step must lower the summed severity by at least this, and a symptom is reached when it falls by
 // at least this share.
 constexpr double least_benefit = 0.5;
 constexpr double reached_share = 0.3;
 // Moves whose benefits differ by less than this share count as equal; the smaller one is advised.
 constexpr double equal_share = 0.1;
-constexpr double assumed_curve_confidence = 0.85;
-constexpr std::size_t packing_draws = 3;
-
-// One trial's severities by draw and symptom, and what they sum to.
-struct Outcome {
-  std::vector<std::vector<double>> severity;  // [draw][symptom]
-
-  double mean(std::size_t symptom) const {
-    double sum = 0.0;
-    for (const auto& draw : severity) sum += draw[symptom];
-    return sum / static_cast<double>(severity.size());
-  }
-};
-
-class Trial {
-public:
-  Trial(const EndRide& ride, const std::vector<Symptom>& measured, const AdviceOptions& options)
-      : ride_(ride),
-        measured_(measured),
-        options_(options),
-        clicks_(click_trials(ride, options.most_clicks)),
-        parts_(part_trials(ride)) {
-    replay();
-  }
-
-  EndChoice choose() const;
-
-private:
-  void replay();
-  void add_packing(const std::vector<sim::VehicleEnd>& settings);
-  double benefit(const Outcome& outcome) const;
-  double confidence(const Outcome& outcome) const;
-  bool makes_worse(const Outcome& outcome) const;
-  std::optional<std::size_t> best_click() const;
-  std::size_t most_eased(const Outcome& outcome) const;
-  Step step_of(std::size_t click) const;
-  std::optional<Handover> handover_of(std::size_t symptom,
-                                      const std::optional<std::size_t>& step) const;
-  std::string part_words(std::size_t symptom, std::size_t part) const;
-
-  const EndRide& ride_;
-  const std::vector<Symptom>& measured_;
-  const AdviceOptions& options_;
-  std::vector<ClickTrial> clicks_;
-  std::vector<PartTrial> parts_;
-  sim::ReplayResult result_;
-  std::vector<double> now_;        // severity of each symptom as recorded
-  std::vector<Outcome> outcomes_;  // clicks first, then parts
-};
-
-sim::ReplayInput replay_input(const EndRide& ride) {
-  return {*ride.vehicle,
-          ride.motion->time.interval_s(),
-          ride.motion->travel_m,
-          ride.motion->velocity_m_s,
-          ride.motion->valid,
-          *ride.counted,
-          {ride.compression_split_m_s, ride.rebound_split_m_s},
-          ride.end->bottom_out_within_m};
-}
-
-// The recorded figure, moved by what the model says would change; rates stay above zero.
-double value_then(const Symptom& symptom, const EndRide& ride, const sim::VehicleEnd& setting,
-                  const sim::EndFigures& now, const sim::EndFigures& then) {
-  if (symptom.kind == SymptomKind::wallows) {
-    const auto damping = body_damping_ratio(ride, setting.curve);
-    return damping ? *damping : symptom.value;
-  }
-  const double change = modelled_value(symptom.kind, then, setting.curve.compression, ride) -
-                        modelled_value(symptom.kind, now, ride.vehicle->curve.compression, ride);
-  if (!std::isfinite(change)) return symptom.value;
-  return std::max(0.0, symptom.value + change);
-}
-
-void Trial::replay() {
-  std::vector<sim::VehicleEnd> settings;
-  for (const ClickTrial& trial : clicks_) settings.push_back(trial.end);
-  for (const PartTrial& trial : parts_) settings.push_back(trial.end);
-  sim::ReplayOptions options;
-  options.ensemble.seed = options_.seed;
-  result_ = sim::replay(replay_input(ride_), settings, options);
-  for (const Symptom& symptom : measured_) now_.push_back(severity_at(symptom, symptom.value));
-  for (std::size_t k = 0; k < settings.size(); ++k) {
-    Outcome outcome;
-    for (std::size_t d = 0; d < result_.modelled_by_draw.size(); ++d) {
-      std::vector<double> severities;
-      for (const Symptom& symptom : measured_)
-        severities.push_back(severity_at(
-            symptom, value_then(symptom, ride_, settings[k], result_.modelled_by_draw[d],
-                                result_.predictions[k].by_draw[d])));
-      outcome.severity.push_back(std::move(severities));
-    }
-    outcomes_.push_back(std::move(outcome));
-  }
-  add_packing(settings);
-}
-
-// Hit trains need the ride itself, so they are only looked at when they are off their aim.
-void Trial::add_packing(const std::vector<sim::VehicleEnd>& settings) {
-  const auto packs = std::find_if(measured_.begin(), measured_.end(), [](const Symptom& symptom) {
-    return symptom.kind == SymptomKind::packs_down && symptom.severity >= 1.0;
-  });
-  if (packs == measured_.end()) return;
-  const auto symptom = static_cast<std::size_t>(packs - measured_.begin());
-  std::vector<std::size_t> rebound;
-  std::vector<sim::VehicleEnd> tried{*ride_.vehicle};
-  for (std::size_t k = 0; k < clicks_.size(); ++k) {
-    if (bike::acts_in_compression(clicks_[k].adjuster)) continue;
-    rebound.push_back(k);
-    tried.push_back(settings[k]);
-  }
-  sim::EnsembleOptions ensemble;
-  ensemble.seed = options_.seed;
-  std::vector<sim::Draw> draws = sim::draw_ensemble(ensemble, ride_.damper->assumed());
-  draws.resize(std::min(draws.size(), packing_draws));
-  const auto climbs = modelled_climbs(ride_, tried, draws);
-  for (std::size_t j = 0; j < rebound.size(); ++j) {
-    Outcome& outcome = outcomes_[rebound[j]];
-    for (std::size_t d = 0; d < outcome.severity.size(); ++d) {
-      const std::vector<double>& of_draw = climbs[d % climbs.size()];
-      outcome.severity[d][symptom] =
-          severity_at(*packs, packs->value + core::to_mm(of_draw[j + 1] - of_draw[0]));
-    }
-  }
-}
-
-double Trial::benefit(const Outcome& outcome) const {
-  double sum = 0.0;
-  for (std::size_t k = 0; k < now_.size(); ++k) sum += now_[k] - outcome.mean(k);
-  return sum;
-}
-
-// Share of the draws in which the step helps, by Laplace's rule of succession, so that a dozen
-// draws never make it certain.
-double Trial::confidence(const Outcome& outcome) const {
-  const double before = std::accumulate(now_.begin(), now_.end(), 0.0);
-  double helps = 0.0;
-  for (const auto& draw : outcome.severity)
-    helps += std::accumulate(draw.begin(), draw.end(), 0.0) < before - 1e-9 ? 1.0 : 0.0;
-  const double share = (helps + 1.0) / (static_cast<double>(outcome.severity.size()) + 2.0);
-  return share * (ride_.damper->assumed() ? assumed_curve_confidence : 1.0);
-}
-
-bool Trial::makes_worse(const Outcome& outcome) const {
-  for (std::size_t k = 0; k < now_.size(); ++k)
-    if (outcome.mean(k) > now_[k] + clearly_worse) return true;
-  return false;
-}
-
-std::size_t Trial::most_eased(const Outcome& outcome) const {
-  std::size_t best = 0;
-  for (std::size_t k = 1; k < now_.size(); ++k)
-    if (now_[k] - outcome.mean(k) > now_[best] - outcome.mean(best)) best = k;
-  return best;
-}
-
-std::optional<std::size_t> Trial::best_click() const {
-  std::vector<std::size_t> fit;
-  double most = 0.0;
-  for (std::size_t k = 0; k < clicks_.size(); ++k) {
-    const Outcome& outcome = outcomes_[k];
-    const double gain = benefit(outcome);
-    if (gain < least_benefit || makes_worse(outcome) ||
-        confidence(outcome) < options_.least_confidence ||
-        measured_[most_eased(outcome)].certainty() < options_.least_confidence)
-      continue;
-    fit.push_back(k);
-    most = std::max(most, gain);
-  }
-  std::optional<std::size_t> best;
-  const auto size = [&](std::size_t k) { return std::abs(clicks_[k].to - clicks_[k].from); };
-  for (const std::size_t k : fit) {
-    if (benefit(outcomes_[k]) < (1.0 - equal_share) * most) continue;
-    if (!best || size(k) < size(*best) ||
-        (size(k) == size(*best) && benefit(outcomes_[k]) > benefit(outcomes_[*best])))
-      best = k;
-  }
-  return best;
-}
+// A curve, or the worth of a click, that nobody measured.
+constexpr double assumed_confidence = 0.85;
 
 // As recorded, and moved by what the model says: the numbers a rider can check on the next run.
 std::vector<Prediction> predictions(const sim::Prediction& predicted,
@@ -212,10 +33,12 @@ std::vector<Prediction> predictions(const sim::Prediction& predicted,
   for (std::size_t m = 0; m < sim::metrics; ++m) {
     const auto metric = static_cast<sim::Metric>(m);
     const sim::Change& change = predicted.change(metric);
-    const bool moves = change.low > 0.0 || change.high < 0.0;
-    if (!moves && metric != sim::Metric::bottom_outs) continue;
     const double scale = sim::units_per_si(metric);
     const double now = scale * recorded.value(metric);
+    const bool moves = change.low > 0.0 || change.high < 0.0;
+    // A count is a range and promises no sign, so it is told where there is one at all.
+    const bool counted = metric == sim::Metric::bottom_outs && std::max(now, change.then) >= 0.5;
+    if (!moves && !counted) continue;
     const auto then = [&](double by) { return std::max(0.0, now + scale * by); };
     moved.push_back(
         {sim::to_string(metric), now, then(change.change), then(change.low), then(change.high)});
@@ -223,63 +46,188 @@ std::vector<Prediction> predictions(const sim::Prediction& predicted,
   return moved;
 }
 
-Step Trial::step_of(std::size_t click) const {
-  const ClickTrial& trial = clicks_[click];
-  const Outcome& outcome = outcomes_[click];
+class Choice {
+public:
+  Choice(const EndRide& ride, const std::vector<Symptom>& measured, const AdviceOptions& options)
+      : ride_(ride),
+        measured_(measured),
+        options_(options),
+        tried_(ride_trials(ride, measured, options)) {}
+
+  EndChoice choose() const;
+
+private:
+  double benefit(std::size_t click) const {
+    return benefit_of_clicks(measured_, tried_.now, tried_.of_clicks[click].means());
+  }
+  double confidence(std::size_t click) const;
+  bool makes_worse(const Outcome& outcome) const;
+  bool fit_for_a_step(std::size_t click) const;
+  std::optional<std::size_t> best_click() const;
+  std::size_t most_eased(std::size_t click) const;
+  double share_of_way(const Outcome& outcome, std::size_t symptom) const;
+  std::string why(std::size_t click) const;
+  Step step_of(std::size_t click) const;
+  bool reaches(const Outcome& outcome, std::size_t symptom) const;
+  std::optional<std::size_t> best_part(std::size_t symptom) const;
+  std::optional<Handover> handover_of(std::size_t symptom,
+                                      const std::optional<std::size_t>& step) const;
+
+  const EndRide& ride_;
+  const std::vector<Symptom>& measured_;
+  const AdviceOptions& options_;
+  Outcomes tried_;
+};
+
+// Share of the draws in which the step helps, by Laplace's rule of succession, so that a dozen
+// draws never make it certain.
+double Choice::confidence(std::size_t click) const {
+  const auto& draws = tried_.of_clicks[click].severity;
+  const auto helps = std::count_if(draws.begin(), draws.end(), [&](const auto& severities) {
+    return benefit_of_clicks(measured_, tried_.now, severities) > 1e-9;
+  });
+  const double share =
+      (static_cast<double>(helps) + 1.0) / (static_cast<double>(draws.size()) + 2.0);
+  return share * (tried_.clicks[click].range.assumed ? assumed_confidence : 1.0);
+}
+
+bool Choice::makes_worse(const Outcome& outcome) const {
+  for (std::size_t k = 0; k < measured_.size(); ++k)
+    if (outcome.mean(k) > tried_.now[k] + clearly_worse) return true;
+  return false;
+}
+
+// Of the symptoms that are an adjuster's job.
+std::size_t Choice::most_eased(std::size_t click) const {
+  const Outcome& outcome = tried_.of_clicks[click];
+  std::size_t best = 0;
+  double most = -1.0;
+  for (std::size_t k = 0; k < measured_.size(); ++k) {
+    const double gain = tried_.now[k] - outcome.mean(k);
+    if (moves_for(measured_[k].kind).empty() || gain <= most) continue;
+    best = k;
+    most = gain;
+  }
+  return best;
+}
+
+bool Choice::fit_for_a_step(std::size_t click) const {
+  return benefit(click) >= least_benefit && !makes_worse(tried_.of_clicks[click]) &&
+         confidence(click) >= options_.least_confidence &&
+         measured_[most_eased(click)].certainty() >= options_.least_confidence;
+}
+
+std::optional<std::size_t> Choice::best_click() const {
+  std::vector<std::size_t> fit;
+  double most = 0.0;
+  for (std::size_t k = 0; k < tried_.clicks.size(); ++k) {
+    if (!fit_for_a_step(k)) continue;
+    fit.push_back(k);
+    most = std::max(most, benefit(k));
+  }
+  std::optional<std::size_t> best;
+  const auto size = [&](std::size_t k) {
+    return std::abs(tried_.clicks[k].to - tried_.clicks[k].range.setting);
+  };
+  for (const std::size_t k : fit) {
+    if (benefit(k) < (1.0 - equal_share) * most) continue;
+    if (!best || size(k) < size(*best) || (size(k) == size(*best) && benefit(k) > benefit(*best)))
+      best = k;
+  }
+  return best;
+}
+
+double Choice::share_of_way(const Outcome& outcome, std::size_t symptom) const {
+  return std::clamp(1.0 - outcome.mean(symptom) / tried_.now[symptom], 0.0, 1.0);
+}
+
+std::string Choice::why(std::size_t click) const {
+  const Outcome& outcome = tried_.of_clicks[click];
+  const std::size_t eased = most_eased(click);
+  const Symptom& symptom = measured_[eased];
+  std::string text = fmt::format(
+      "{} {:.3g} {} (aim {:.3g}, 90 % interval {:.3g} to {:.3g}); ridden again over the same "
+      "ground it comes {:.0f} % of the way to its aim",
+      words(symptom.kind), symptom.value, unit(symptom.kind), symptom.aim, symptom.low,
+      symptom.high, 100.0 * share_of_way(outcome, eased));
+  for (std::size_t k = 0; k < measured_.size(); ++k)
+    if (k != eased && tried_.now[k] > 0.0 && outcome.mean(k) < tried_.now[k] - least_benefit)
+      text += fmt::format("; it also eases: {}", words(measured_[k].kind));
+  for (std::size_t k = 0; k < measured_.size(); ++k)
+    if (outcome.mean(k) > tried_.now[k] + worth_watching)
+      text += fmt::format("; watch for: {}", words(measured_[k].kind));
+  return text + doubt_words(*ride_.damper, tried_.clicks[click].range);
+}
+
+Step Choice::step_of(std::size_t click) const {
+  const ClickTrial& trial = tried_.clicks[click];
   Step step;
   step.end = ride_.name;
-  step.adjuster = trial.adjuster;
-  step.from = trial.from;
+  step.adjuster = trial.range.adjuster;
+  step.from = trial.range.setting;
   step.to = trial.to;
-  step.symptom = measured_[most_eased(outcome)];
-  step.confidence = std::min(confidence(outcome), step.symptom.certainty());
-  step.predicted = predictions(result_.predictions[click], result_.recorded);
-  const std::size_t eased = most_eased(outcome);
-  step.why = fmt::format(
-      "{} {:.3g} {} (aim {:.3g}, 90 % interval {:.3g} to {:.3g}); ridden again over the same "
-      "ground "
-      "it comes {:.0f} % of the way to its aim",
-      words(step.symptom.kind), step.symptom.value, unit(step.symptom.kind), step.symptom.aim,
-      step.symptom.low, step.symptom.high,
-      100.0 * std::clamp(1.0 - outcome.mean(eased) / now_[eased], 0.0, 1.0));
-  for (std::size_t k = 0; k < now_.size(); ++k) {
-    if (k == eased || now_[k] <= 0.0 || outcome.mean(k) >= now_[k] - least_benefit) continue;
-    step.why += fmt::format("; it also eases: {}", words(measured_[k].kind));
-  }
-  for (std::size_t k = 0; k < now_.size(); ++k) {
-    if (outcome.mean(k) <= now_[k] + 0.25) continue;
-    step.why += fmt::format("; watch for: {}", words(measured_[k].kind));
-  }
+  step.symptom = measured_[most_eased(click)];
+  step.why = why(click);
+  step.confidence = std::min(confidence(click), step.symptom.certainty());
+  step.predicted = predictions(tried_.result.predictions[click], tried_.result.recorded);
+  step.seed = options_.seed;
   return step;
 }
 
-std::string Trial::part_words(std::size_t symptom, std::size_t part) const {
-  const Outcome& outcome = outcomes_[clicks_.size() + part];
-  return fmt::format("no click brings it to its aim; {} would take it {:.0f} % of the way",
-                     parts_[part].words,
-                     100.0 * std::clamp(1.0 - outcome.mean(symptom) / now_[symptom], 0.0, 1.0));
+bool Choice::reaches(const Outcome& outcome, std::size_t symptom) const {
+  return outcome.mean(symptom) <= (1.0 - reached_share) * tried_.now[symptom];
+}
+
+// The part that takes most severity away in all, of those that reach the symptom and make none
+// clearly worse; between equals the one that a setter turns to first.
+std::optional<std::size_t> Choice::best_part(std::size_t symptom) const {
+  const auto gain = [&](std::size_t p) {
+    double sum = 0.0;
+    for (std::size_t k = 0; k < measured_.size(); ++k)
+      sum += tried_.now[k] - tried_.of_parts[p].mean(k);
+    return sum;
+  };
+  std::optional<std::size_t> best;
+  for (std::size_t p = 0; p < tried_.parts.size(); ++p) {
+    const Outcome& outcome = tried_.of_parts[p];
+    if (!reaches(outcome, symptom) || makes_worse(outcome)) continue;
+    if (!best || (1.0 - equal_share) * gain(p) > gain(*best)) best = p;
+  }
+  return best;
 }
 
 // A clear symptom that the advised step does not reach goes to the part that eases it most.
-std::optional<Handover> Trial::handover_of(std::size_t symptom,
-                                           const std::optional<std::size_t>& step) const {
+std::optional<Handover> Choice::handover_of(std::size_t symptom,
+                                            const std::optional<std::size_t>& step) const {
   const Symptom& one = measured_[symptom];
-  if (now_[symptom] < 1.0 || one.certainty() < options_.least_confidence) return std::nullopt;
-  const double enough = (1.0 - reached_share) * now_[symptom];
-  if (step && outcomes_[*step].mean(symptom) <= enough) return std::nullopt;
-  std::optional<std::size_t> best;
-  for (std::size_t p = 0; p < parts_.size(); ++p) {
-    const double then = outcomes_[clicks_.size() + p].mean(symptom);
-    if (then <= enough && (!best || then < outcomes_[clicks_.size() + *best].mean(symptom)))
-      best = p;
-  }
-  if (best) return Handover{one, parts_[*best].part, part_words(symptom, *best)};
-  const Receiver& receiver = receiver_of(one.kind);
-  return Handover{one, receiver.to, receiver.why};
+  if (tried_.now[symptom] < 1.0 || one.certainty() < options_.least_confidence) return std::nullopt;
+  if (step && reaches(tried_.of_clicks[*step], symptom)) return std::nullopt;
+  const std::optional<std::size_t> best = best_part(symptom);
+  const Receiver& usual = receiver_of(one.kind);
+  if (!best) return Handover{one, usual.to, usual.why};
+  const PartTrial& part = tried_.parts[*best];
+  return Handover{one, part.part,
+                  fmt::format("{}{} would take it {:.0f} % of the way to its aim",
+                              step ? "" : "no click brings it there; ", part.words,
+                              100.0 * share_of_way(tried_.of_parts[*best], symptom))};
 }
 
-EndChoice Trial::choose() const {
+std::string what_to_check(const EndRide& ride, double carried_share) {
+  const std::string_view end = bike::to_string(ride.name);
+  return fmt::format(
+      "{0}: at the travel in the log the spring carries {1:.2f} times the weight that the bike "
+      "file "
+      "puts on it, so no step is named; check rider.mass_kg, chassis.front_share, {0}.spring and "
+      "the zero of {0}.sensor's calibration",
+      end, carried_share);
+}
+
+EndChoice Choice::choose() const {
   EndChoice choice;
+  if (!tried_.result.carries_its_weight()) {
+    choice.check = what_to_check(ride_, tried_.result.carried_share);
+    return choice;
+  }
   const std::optional<std::size_t> best = best_click();
   if (best) choice.step = step_of(*best);
   for (std::size_t k = 0; k < measured_.size(); ++k)
@@ -291,7 +239,7 @@ EndChoice Trial::choose() const {
 
 EndChoice choose_by_replay(const EndRide& ride, const std::vector<Symptom>& measured,
                            const AdviceOptions& options) {
-  return Trial(ride, measured, options).choose();
+  return Choice(ride, measured, options).choose();
 }
 
 }  // namespace clickwise::advice

@@ -17,9 +17,9 @@ namespace {
 constexpr double window_before_event_s = 0.3;
 constexpr double least_share_per_click =
     0.01;  // of the damper's work: below it a click is not felt
-// A rule of thumb is never certain, and less so on a curve that nobody measured.
+// A rule of thumb is never certain, and less so on a curve, or clicks, that nobody measured.
 constexpr double rule_confidence = 0.9;
-constexpr double assumed_curve_confidence = 0.75;
+constexpr double assumed_confidence = 0.75;
 
 std::vector<Window> before(const std::vector<run::EndStop>& stops) {
   std::vector<Window> windows;
@@ -161,10 +161,12 @@ std::string why(const Symptom& symptom, const EndRide& ride, const Candidate& ca
     text += fmt::format(", met at {:.0f} to {:.0f} mm/s", core::to_mm(least->closing_speed_m_s),
                         core::to_mm(most->closing_speed_m_s));
   }
-  return text + fmt::format(
-                    "; where that happens one click is worth {:.1f} J, {:.1f} % of the "
-                    "damper's work there",
-                    candidate.joules, 100.0 * candidate.share);
+  return text +
+         fmt::format(
+             "; where that happens one click is worth {:.1f} J, {:.1f} % of the "
+             "damper's work there",
+             candidate.joules, 100.0 * candidate.share) +
+         doubt_words(*ride.damper, candidate.range);
 }
 
 Step step_for(const Symptom& symptom, const EndRide& ride, const Candidate& candidate,
@@ -179,7 +181,7 @@ Step step_for(const Symptom& symptom, const EndRide& ride, const Candidate& cand
   step.symptom = symptom;
   step.why = why(symptom, ride, candidate);
   step.confidence =
-      symptom.certainty() * (ride.damper->assumed() ? assumed_curve_confidence : rule_confidence);
+      symptom.certainty() * (candidate.range.assumed ? assumed_confidence : rule_confidence);
   if (symptom.kind == SymptomKind::hard_bottoming && ride.sprung_mass_kg)
     step.predicted.push_back(
         predicted_bottom_outs(ride, remaining_bottom_outs(ride, candidate.move, step.to)));

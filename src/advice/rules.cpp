@@ -21,8 +21,11 @@ const std::map<SymptomKind, std::vector<Move>> moves{
     {SymptomKind::harsh,
      {{Adjuster::high_speed_compression, softer}, {Adjuster::low_speed_compression, softer}}},
     {SymptomKind::held_by_platform, {{Adjuster::low_speed_compression, softer}}},
+    // The bleed's force is capped by the valve's opening force: beyond it, support is preload.
     {SymptomKind::wallows,
-     {{Adjuster::low_speed_compression, firmer}, {Adjuster::low_speed_rebound, firmer}}},
+     {{Adjuster::low_speed_compression, firmer},
+      {Adjuster::low_speed_rebound, firmer},
+      {Adjuster::high_speed_compression, firmer}}},
     {SymptomKind::unused_travel,
      {{Adjuster::high_speed_compression, softer}, {Adjuster::low_speed_compression, softer}}},
 };
@@ -79,6 +82,15 @@ const Receiver& receiver_without_damper(SymptomKind kind) {
   static const Receiver bike_file{
       "bike file", "it does not describe the damper: with its clicks a step can be named"};
   return moves_for(kind).empty() ? receiver_of(kind) : bike_file;
+}
+
+std::string doubt_words(const damper::Damper& damper, const damper::AdjusterRange& range) {
+  if (damper.assumed())
+    return "; less sure because the damper's curve is assumed: points from a dyno would settle it";
+  if (range.assumed)
+    return "; less sure because the dyno table does not tell what this adjuster's clicks move, so "
+           "that is assumed";
+  return {};
 }
 
 }  // namespace clickwise::advice

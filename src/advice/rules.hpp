@@ -6,6 +6,7 @@
 #include <vector>
 
 #include "clickwise/advice/symptom.hpp"
+#include "clickwise/damper/damper.hpp"
 
 namespace clickwise::advice {
 
@@ -27,5 +28,9 @@ const Receiver& receiver_of(SymptomKind kind);
 
 // The same while the bike file does not know the damper, so that no click can be named.
 const Receiver& receiver_without_damper(SymptomKind kind);
+
+// Why a step of this adjuster is less sure than it might be, to go behind its reason; empty where
+// its curve and its clicks were measured.
+std::string doubt_words(const damper::Damper& damper, const damper::AdjusterRange& range);
 
 }  // namespace clickwise::advice

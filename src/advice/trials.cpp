@@ -36,7 +36,7 @@ std::vector<ClickTrial> click_trials(const EndRide& ride, int most_clicks) {
     for (int clicks = -most_clicks; clicks <= most_clicks; ++clicks) {
       const int to = range.setting + clicks;
       if (clicks == 0 || to < 0 || to > range.clicks) continue;
-      ClickTrial trial{range.adjuster, range.setting, to, *ride.vehicle};
+      ClickTrial trial{range, to, *ride.vehicle};
       trial.end.curve = ride.damper->curve_with(range.adjuster, to);
       trials.push_back(std::move(trial));
     }

@@ -11,8 +11,7 @@
 namespace clickwise::advice {
 
 struct ClickTrial {
-  bike::Adjuster adjuster = bike::Adjuster::low_speed_compression;
-  int from = 0;
+  damper::AdjusterRange range;
   int to = 0;
   sim::VehicleEnd end;
 };

@@ -47,8 +47,8 @@ void add_review(CLI::App& app, Common& common) {
                    "smoothing span chosen by hand instead of from the log, ms")
       ->type_name("MS")
       ->check(CLI::Range(0.1, 1000.0));
-  command->add_flag("--by-replay", arguments->options.advice_by_replay,
-                    "judge every step by riding the same ground again; takes some seconds more");
+  command->add_flag("--by-rule", arguments->options.advice_by_rule,
+                    "advise by rule, without riding the same ground again; saves some seconds");
   add_output(*command, arguments->output, "review.html and review.json");
   command->callback([&common, arguments] { run_review(common, *arguments); });
 }

@@ -7,6 +7,7 @@ namespace clickwise::core {
 namespace {
 
 std::string sentence(const Place& place, const std::string& wrong, const std::string& remedy) {
+  if (place.file.empty()) return fmt::format("{}; {}", wrong, remedy);
   return fmt::format("{}: {}; {}", to_string(place), wrong, remedy);
 }
 

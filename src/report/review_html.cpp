@@ -1,6 +1,7 @@
 #include "clickwise/report/review_html.hpp"
 
 #include <fmt/format.h>
+#include <fmt/ranges.h>
 
 #include "apparent_words.hpp"
 #include "clickwise/core/units.hpp"
@@ -85,7 +86,8 @@ std::string section(const std::string& heading, const std::string& body) {
 std::string step_items(const advice::Step& step) {
   std::vector<std::string> items{"How sure: " + confidence_words(step.confidence),
                                  "Why: " + step.why};
-  if (!step.predicted.empty()) items.push_back("Predicts " + predictions_words(step.predicted));
+  const std::vector<std::string> predicted = predictions_words(step.predicted);
+  if (!predicted.empty()) items.push_back(fmt::format("Predicts {}", fmt::join(predicted, "; ")));
   return list(items);
 }
 
@@ -102,6 +104,9 @@ std::string first_section(const advice::Advice& advice) {
   for (const advice::Handover& handover : advice.handovers)
     html += "<p>Not for an adjuster: " + escaped(symptom_words(handover.symptom)) +
             "; look at the " + escaped(handover.to) + ": " + escaped(handover.why) + ".</p>\n";
+  for (const std::string& check : advice.checks)
+    html += "<p>Check first: " + escaped(check) + ".</p>\n";
+  for (const std::string& note : advice.notes) html += "<p>Note: " + escaped(note) + ".</p>\n";
   return html + "</section>\n";
 }
 

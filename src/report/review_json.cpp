@@ -177,7 +177,17 @@ json::object step_json(const advice::Step& step) {
           {"symptom", text(advice::words(step.symptom.kind))},
           {"why", text(step.why)},
           {"confidence", number(step.confidence)},
-          {"predicted", std::move(predicted)}};
+          {"predicted", std::move(predicted)},
+          {"by", step.seed ? "replay" : "rule"},
+          {"seed", step.seed ? json::value(*step.seed) : json::value()}};
+}
+
+// The review's own, then what the advice has to say of itself.
+std::vector<std::string> all_notes(const workflow::Review& review) {
+  std::vector<std::string> all = review.notes;
+  all.insert(all.end(), review.advice.checks.begin(), review.advice.checks.end());
+  all.insert(all.end(), review.advice.notes.begin(), review.advice.notes.end());
+  return all;
 }
 
 json::object front_rear_json(const std::optional<workflow::FrontRear>& both) {
@@ -229,7 +239,7 @@ std::string review_json(const workflow::Review& review) {
                           {"not_for_an_adjuster", std::move(handovers)},
                           {"symptoms", std::move(symptoms)},
                           {"missing", strings(review.missing)},
-                          {"notes", strings(review.notes)},
+                          {"notes", strings(all_notes(review))},
                           {"cautions", strings(advice::cautions())}};
   return to_text(root);
 }

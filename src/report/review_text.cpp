@@ -2,8 +2,11 @@
 
 #include <fmt/format.h>
 
+#include <algorithm>
 #include <cmath>
 #include <iterator>
+#include <string_view>
+#include <utility>
 
 #include "apparent_words.hpp"
 #include "clickwise/core/units.hpp"
@@ -25,6 +28,26 @@ public:
     fmt::format_to(Out(text_), format, std::forward<Args>(args)...);
     while (!text_.empty() && text_.back() == ' ') text_.pop_back();
     text_ += '\n';
+  }
+
+  // Behind a label, broken between words so that a line stays within 96 columns.
+  void item(std::string_view label, std::string_view words) {
+    constexpr std::size_t width = 96;
+    std::string row(label);
+    bool bare = true;
+    while (!words.empty()) {
+      const std::size_t space = std::min(words.find(' '), words.size());
+      if (!bare && row.size() + 1 + space > width) {
+        text_ += row + '\n';
+        row.assign(label.size(), ' ');
+        bare = true;
+      }
+      if (!bare) row += ' ';
+      row += words.substr(0, space);
+      bare = false;
+      words.remove_prefix(std::min(space + 1, words.size()));
+    }
+    text_ += row + '\n';
   }
 
   void blank() { text_ += '\n'; }
@@ -57,14 +80,19 @@ void write_advice(Writer& out, const advice::Advice& advice) {
       const advice::Step& step = advice.steps[i];
       if (i > 0) out.line("Only after riding that: {}.", step_words(step));
       out.line("  how sure  {}", confidence_words(step.confidence));
-      out.line("  why       {}", step.why);
-      if (!step.predicted.empty()) out.line("  predicts  {}", predictions_words(step.predicted));
+      out.item("  why       ", step.why);
+      const char* label = "  predicts  ";
+      for (const std::string& words : predictions_words(step.predicted))
+        out.item(std::exchange(label, "            "), words);
     }
   }
   for (const advice::Handover& handover : advice.handovers)
-    out.line("{}: {}; look at the {}: {}.",
-             handover.to == "bike file" ? "No click can be named" : "Not for an adjuster",
-             symptom_words(handover.symptom), handover.to, handover.why);
+    out.item("", fmt::format(
+                     "{}: {}; look at the {}: {}.",
+                     handover.to == "bike file" ? "No click can be named" : "Not for an adjuster",
+                     symptom_words(handover.symptom), handover.to, handover.why));
+  for (const std::string& check : advice.checks) out.item("", "Check first: " + check + ".");
+  for (const std::string& note : advice.notes) out.item("", "Note: " + note + ".");
 }
 
 std::string speed(double m_s) {

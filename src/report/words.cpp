@@ -33,7 +33,7 @@ std::string confidence_words(double confidence) {
   return fmt::format("{} ({:.0f} %)", words, 100.0 * confidence);
 }
 
-std::string predictions_words(const std::vector<advice::Prediction>& predictions) {
+std::vector<std::string> predictions_words(const std::vector<advice::Prediction>& predictions) {
   struct Row {
     std::string_view metric;
     std::string_view words;
@@ -50,18 +50,19 @@ std::string predictions_words(const std::vector<advice::Prediction>& predictions
       {"bands.rebound.high_share", "high-speed rebound time", " %", 100.0, 1},
       {"bands.rebound.p95_mm_s", "p95 rebound", " mm/s", 1.0, 0},
   }};
-  std::string words;
+  std::vector<std::string> lines;
   for (const Row& row : rows) {
     for (const advice::Prediction& prediction : predictions) {
       if (prediction.metric != row.metric) continue;
-      if (!words.empty()) words += "; ";
-      words += fmt::format("{} {:.{}f} to {:.{}f}{} ({:.{}f} to {:.{}f})", row.words,
-                           row.scale * prediction.now, row.decimals, row.scale * prediction.then,
-                           row.decimals, row.unit, row.scale * prediction.low, row.decimals,
-                           row.scale * prediction.high, row.decimals);
+      lines.push_back(fmt::format("{}: {:.{}f}{} now, {:.{}f} then ({:.{}f} to {:.{}f})", row.words,
+                                  row.scale * prediction.now, row.decimals, row.unit,
+                                  row.scale * prediction.then, row.decimals,
+                                  row.scale * prediction.low, row.decimals,
+                                  row.scale * prediction.high, row.decimals));
     }
   }
-  return words.empty() ? words : words + "; in brackets: 90 % bounds";
+  if (!lines.empty()) lines.emplace_back("in brackets: 90 % bounds, over the same ground");
+  return lines;
 }
 
 std::string symptom_words(const advice::Symptom& symptom) {

@@ -21,9 +21,9 @@ std::string step_words(const advice::Step& step);
 // "0.93: likely" and the like
 std::string confidence_words(double confidence);
 
-// "bottom-outs 4 to 1 (0 to 3); mean travel 39.7 to 40.9 mm (40.2 to 41.0); in brackets: 90 %
-// bounds"
-std::string predictions_words(const std::vector<advice::Prediction>& predictions);
+// A line each: "bottom-outs: 4 now, 1 then (0 to 3)", "mean travel: 39.7 mm now, 40.9 then (40.2 to
+// 41.0)", and a last one that says what the brackets are. Empty without predictions.
+std::vector<std::string> predictions_words(const std::vector<advice::Prediction>& predictions);
 
 // "packs down 3.1 mm per hit (aim 2)"
 std::string symptom_words(const advice::Symptom& symptom);

@@ -33,7 +33,7 @@ damper::Law scaled(damper::Law law, double factor) {
 
 }  // namespace
 
-std::vector<Draw> draw_ensemble(const EnsembleOptions& options, bool assumed) {
+std::vector<Draw> draw_ensemble(const EnsembleOptions& options, double damper_share) {
   std::vector<Draw> draws(std::max<std::size_t>(1, options.draws));
   Random random(options.seed, 31);
   const std::size_t count = draws.size() - 1;
@@ -41,13 +41,12 @@ std::vector<Draw> draw_ensemble(const EnsembleOptions& options, bool assumed) {
     const auto places = strata(count, random);
     for (std::size_t i = 0; i < count; ++i) set(draws[i + 1], low + (high - low) * places[i]);
   };
-  const double damper = assumed ? options.assumed_damper_share : options.damper_share;
   const double mass = options.sprung_mass_share, tyre = options.tyre_share;
   spread([](Draw& d, double f) { d.sprung_mass = f; }, 1.0 - mass, 1.0 + mass);
   spread([](Draw& d, double f) { d.tyre = f; }, 1.0 - tyre, 1.0 + tyre);
   spread([](Draw& d, double f) { d.friction = f; }, 0.0, options.most_friction);
-  spread([](Draw& d, double f) { d.damper[0] = f; }, 1.0 - damper, 1.0 + damper);
-  spread([](Draw& d, double f) { d.damper[1] = f; }, 1.0 - damper, 1.0 + damper);
+  spread([](Draw& d, double f) { d.damper[0] = f; }, 1.0 - damper_share, 1.0 + damper_share);
+  spread([](Draw& d, double f) { d.damper[1] = f; }, 1.0 - damper_share, 1.0 + damper_share);
   spread([](Draw& d, double f) { d.relief_m = f; }, options.least_relief_m, options.most_relief_m);
   spread([](Draw& d, double f) { d.longest_hop_s = f; }, options.longest_hop_s[0],
          options.longest_hop_s[1]);

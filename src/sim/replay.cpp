@@ -12,6 +12,10 @@
 
 namespace clickwise::sim {
 
+bool ReplayResult::carries_its_weight() const {
+  return std::abs(carried_share - 1.0) <= carried_tolerance;
+}
+
 namespace {
 
 // A valid stretch of the log, with the samples of it that are counted.
@@ -221,7 +225,7 @@ ReplayResult replay(const ReplayInput& input, std::span<const VehicleEnd> candid
   result.recorded = count_recorded(input, parts, plan);
   result.replayed_s = result.recorded.seconds;
 
-  const auto draws = draw_ensemble(options.ensemble, input.end.curve.assumed);
+  const auto draws = draw_ensemble(options.ensemble, input.end.curve.scatter_share);
   const std::span<const Draw> first(draws.data(), 1);
   const Rides rides(input, candidates, plan);
   const auto ground = recover_all(input, parts, first, options.inverse);

@@ -85,14 +85,6 @@ ChosenSplits choose_splits(const bike::End& end, const bike::Split& asked,
           choose_split(asked.rebound_m_s, end.split.rebound_m_s, rebound_knee)};
 }
 
-std::optional<sim::VehicleEnd> vehicle_of(const bike::Bike& bike, bike::EndName name) {
-  try {
-    return sim::VehicleEnd::from(bike, name);
-  } catch (const core::JobError&) {
-    return std::nullopt;
-  }
-}
-
 EndReview review_end(const bike::Bike& bike, const RideEnd& ride, const bike::Split& asked,
                      const std::optional<damper::Damper>& damper) {
   const bike::End& end = *bike.end(ride.name);
@@ -149,6 +141,14 @@ advice::EndRide advice_view(const bike::Bike& bike, const RideEnd& ride, const E
   view.compression_split_m_s = review.bands.compression.split_m_s;
   view.rebound_split_m_s = review.bands.rebound.split_m_s;
   return view;
+}
+
+void add_vehicle(advice::EndRide& view) {
+  try {
+    view.vehicle = sim::VehicleEnd::from(*view.bike, view.name);
+  } catch (const core::JobError& error) {
+    view.no_vehicle = error.what();
+  }
 }
 
 }  // namespace clickwise::workflow

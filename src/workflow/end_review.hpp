@@ -27,14 +27,14 @@ struct ChosenSplits {
 ChosenSplits choose_splits(const bike::End& end, const bike::Split& asked,
                            const std::optional<damper::Damper>& damper);
 
-// The end as the replay needs it; empty when the bike file knows too little.
-std::optional<sim::VehicleEnd> vehicle_of(const bike::Bike& bike, bike::EndName name);
-
 EndReview review_end(const bike::Bike& bike, const RideEnd& ride, const bike::Split& asked,
                      const std::optional<damper::Damper>& damper);
 
 // The view of it that the advice takes; points into its arguments.
 advice::EndRide advice_view(const bike::Bike& bike, const RideEnd& ride, const EndReview& review,
                             const std::optional<damper::Damper>& damper);
+
+// The end as the replay needs it, or why the bike file knows too little for it.
+void add_vehicle(advice::EndRide& view);
 
 }  // namespace clickwise::workflow

@@ -12,10 +12,6 @@ namespace clickwise::workflow {
 
 namespace {
 
-// Off by more than this and masses or spring of the bike file cannot be right: a right bike comes
-// within 2.5 % on invented rides (docs/accuracy.md).
-constexpr double carried_tolerance = 0.12;
-
 std::array<double, sim::directions> splits_of(const Ride& ride, const RideEnd& end,
                                               const SplitRequest& asked) {
   const auto damper = damper_of(ride.bike, end.name);
@@ -54,10 +50,6 @@ bool replayable(const Ride& ride, bike::EndName name, std::vector<std::string>& 
 
 }  // namespace
 
-bool carries_its_weight(const sim::ReplayResult& result) {
-  return std::abs(result.carried_share - 1.0) <= carried_tolerance;
-}
-
 Replay replay(const ReplayOptions& options) {
   const Ride ride = load_ride(options.ride);
   Replay result{ride.bike.name, ride.log, {}, {}, ride.notes};
@@ -71,7 +63,7 @@ Replay replay(const ReplayOptions& options) {
     replay_options.ensemble.seed = options.seed;
     EndReplay one{end.name, touches(result.settings, end.name),
                   sim::replay(input_of(ride, end, options.splits), candidates, replay_options)};
-    if (!carries_its_weight(one.result))
+    if (!one.result.carries_its_weight())
       result.notes.push_back(fmt::format(
           "{}: the model carries {:.2f} times the sprung weight: masses, front_share or spring of "
           "the bike file cannot be right",

@@ -66,10 +66,10 @@ Review review(const ReviewOptions& options) {
     views.push_back(advice_view(ride.bike, ride.ends[i], result.ends[i], dampers[i]));
     views.back().airtimes = &result.airtimes;
     views.back().bike = &ride.bike;
-    views.back().vehicle = vehicle_of(ride.bike, ride.ends[i].name);
+    add_vehicle(views.back());
   }
   advice::AdviceOptions advice_options;
-  advice_options.by_replay = options.advice_by_replay;
+  advice_options.by_rule = options.advice_by_rule;
   result.advice = advice::advise(views, ride.bike.aims, advice_options);
   result.missing = bike::what_is_missing(ride.bike);
   return result;

@@ -49,7 +49,7 @@ TEST_CASE("the present settings give the ride back and change nothing", "[workfl
   REQUIRE(replay.ends.size() == 2);
   for (const workflow::EndReplay& end : replay.ends) {
     CHECK_FALSE(end.changed);
-    CHECK(workflow::carries_its_weight(end.result));
+    CHECK(end.result.carries_its_weight());
     CHECK(end.result.travel_rms_m < 1e-3);
     for (std::size_t m = 0; m < sim::metrics; ++m)
       CHECK(end.result.predictions.front().changes[m].change == 0.0);

@@ -3,6 +3,7 @@
 
 #include <cstdint>
 #include <optional>
+#include <string>
 #include <vector>
 
 #include "clickwise/bike/bike.hpp"
@@ -29,6 +30,7 @@ struct EndRide {
   const damper::Damper* damper = nullptr;               // null when the bike file has none
   const bike::Bike* bike = nullptr;
   std::optional<sim::VehicleEnd> vehicle;  // empty when the bike file knows too little of it
+  std::string no_vehicle;                  // why, with the keys to add; empty otherwise
   std::optional<double> sprung_mass_kg;
   double compression_split_m_s = 0.0;
   double rebound_split_m_s = 0.0;

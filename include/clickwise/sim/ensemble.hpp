@@ -18,10 +18,8 @@ struct EnsembleOptions {
   std::uint64_t seed = 20240607;
   double sprung_mass_share = 0.10;  // +- of it
   double tyre_share = 0.20;
-  double most_friction = 2.0;          // 0 to this many times
-  double damper_share = 0.05;          // of the force, each direction on its own (dyno scatter)
-  double assumed_damper_share = 0.25;  // in its place where nobody measured the curve
-  double least_relief_m = 0.010;       // of InverseOptions::relief_m
+  double most_friction = 2.0;     // 0 to this many times
+  double least_relief_m = 0.010;  // of InverseOptions::relief_m
   double most_relief_m = 0.050;
   double longest_hop_s[2] = {0.15, 0.30};  // of InverseOptions::longest_hop_s
 };
@@ -37,8 +35,9 @@ struct Draw {
 };
 
 // Seeded; each quantity covers its range evenly, one draw to a stratum (Latin hypercube: McKay,
-// Beckman and Conover, Technometrics 21:239-245, 1979). `assumed`: nobody measured the damper.
-std::vector<Draw> draw_ensemble(const EnsembleOptions& options, bool assumed);
+// Beckman and Conover, Technometrics 21:239-245, 1979). `damper_share`: +- of the damper's force,
+// each direction on its own, 0 or more and below 1 (Curve::scatter_share).
+std::vector<Draw> draw_ensemble(const EnsembleOptions& options, double damper_share);
 
 // The end as drawn. An end without friction gets the draw's factor of 15 N in all draws but the
 // unchanged one.

@@ -91,6 +91,10 @@ struct Prediction {
   const Change& change(Metric metric) const { return changes[static_cast<std::size_t>(metric)]; }
 };
 
+// Off by more than this and masses or spring of the bike file cannot be right: a right bike comes
+// within 2.5 % on invented rides (docs/accuracy.md).
+inline constexpr double carried_tolerance = 0.12;
+
 struct ReplayResult {
   EndFigures recorded;                       // of the same samples
   EndFigures modelled;                       // the settings of the ride, through the model
@@ -103,6 +107,9 @@ struct ReplayResult {
                                 // spring of the bike file cannot be right
   double replayed_s = 0.0;
   std::uint64_t seed = 0;
+
+  // Whether the bike file can be right, by carried_share.
+  bool carries_its_weight() const;
 };
 
 struct ReplayOptions {

@@ -19,9 +19,6 @@ struct EndReplay {
   sim::ReplayResult result;  // its one prediction is the changed bike's
 };
 
-// Whether the bike file can be right: the wheel force that the model needs over the sprung weight.
-bool carries_its_weight(const sim::ReplayResult& result);
-
 struct Replay {
   std::string bike_name;
   LogSummary log;

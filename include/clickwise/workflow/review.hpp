@@ -65,7 +65,7 @@ struct Review {
 struct ReviewOptions {
   RideOptions ride;
   SplitRequest splits;
-  bool advice_by_replay = false;  // advice::AdviceOptions::by_replay
+  bool advice_by_rule = false;  // advice::AdviceOptions::by_rule
 };
 
 // Throws what load_ride throws.
