@@ -117,12 +117,12 @@ std::vector<double> Outcome::means() const {
   return all;
 }
 
-double benefit_of_clicks(std::span<const Symptom> measured, std::span<const double> now,
+double benefit_of_clicks(std::span<const std::uint8_t> for_clicks, std::span<const double> now,
                          std::span<const double> then) {
   double sum = 0.0;
-  for (std::size_t k = 0; k < measured.size(); ++k) {
+  for (std::size_t k = 0; k < now.size(); ++k) {
     const double gain = now[k] - then[k];
-    sum += moves_for(measured[k].kind).empty() ? std::min(0.0, gain) : gain;
+    sum += for_clicks[k] ? gain : std::min(0.0, gain);
   }
   return sum;
 }
@@ -138,8 +138,10 @@ Outcomes ride_trials(const EndRide& ride, const std::vector<Symptom>& measured,
   sim::ReplayOptions replay_options;
   replay_options.ensemble.seed = options.seed;
   outcomes.result = sim::replay(replay_input(ride), settings, replay_options);
-  for (const Symptom& symptom : measured)
+  for (const Symptom& symptom : measured) {
     outcomes.now.push_back(severity_at(symptom, symptom.value));
+    outcomes.for_clicks.push_back(is_for_clicks(symptom, ride) ? 1 : 0);
+  }
   for (std::size_t k = 0; k < settings.size(); ++k) {
     Outcome outcome =
         outcome_of(ride, measured, settings[k], outcomes.result, outcomes.result.predictions[k]);

@@ -2,6 +2,7 @@
 // itself on every bike of the ensemble.
 #pragma once
 
+#include <cstdint>
 #include <span>
 #include <vector>
 
@@ -22,15 +23,16 @@ struct Outcome {
 struct Outcomes {
   std::vector<ClickTrial> clicks;
   std::vector<PartTrial> parts;
-  std::vector<double> now;         // severity of each symptom as recorded
-  std::vector<Outcome> of_clicks;  // as clicks
-  std::vector<Outcome> of_parts;   // as parts
-  sim::ReplayResult result;        // predictions: clicks first, then parts
+  std::vector<double> now;               // severity of each symptom as recorded
+  std::vector<std::uint8_t> for_clicks;  // whether it is a job for clicks: is_for_clicks
+  std::vector<Outcome> of_clicks;        // as clicks
+  std::vector<Outcome> of_parts;         // as parts
+  sim::ReplayResult result;              // predictions: clicks first, then parts
 };
 
-// What clicks bring: the summed severity that they take away. What is no job for an adjuster counts
-// only where it gets worse, so that no click is turned for the spring's sake.
-double benefit_of_clicks(std::span<const Symptom> measured, std::span<const double> now,
+// What clicks bring: the summed severity that they take away. What is not for clicks counts only
+// where it gets worse, so that none is turned for the spring's sake.
+double benefit_of_clicks(std::span<const std::uint8_t> for_clicks, std::span<const double> now,
                          std::span<const double> then);
 
 // `measured`: every figure of this end. Needs ride.vehicle, ride.damper and ride.bike. A figure

@@ -6,6 +6,7 @@
 #include <cmath>
 #include <cstdlib>
 
+#include "clickwise/advice/find_symptoms.hpp"
 #include "outcomes.hpp"
 #include "rules.hpp"
 
@@ -58,7 +59,7 @@ public:
 
 private:
   double benefit(std::size_t click) const {
-    return benefit_of_clicks(measured_, tried_.now, tried_.of_clicks[click].means());
+    return benefit_of_clicks(tried_.for_clicks, tried_.now, tried_.of_clicks[click].means());
   }
   double confidence(std::size_t click) const;
   bool makes_worse(const Outcome& outcome) const;
@@ -68,6 +69,7 @@ private:
   double share_of_way(const Outcome& outcome, std::size_t symptom) const;
   std::string why(std::size_t click) const;
   Step step_of(std::size_t click) const;
+  bool eases(const Outcome& outcome, std::size_t symptom) const;
   bool reaches(const Outcome& outcome, std::size_t symptom) const;
   std::optional<std::size_t> best_part(std::size_t symptom) const;
   std::optional<Handover> handover_of(std::size_t symptom,
@@ -84,7 +86,7 @@ private:
 double Choice::confidence(std::size_t click) const {
   const auto& draws = tried_.of_clicks[click].severity;
   const auto helps = std::count_if(draws.begin(), draws.end(), [&](const auto& severities) {
-    return benefit_of_clicks(measured_, tried_.now, severities) > 1e-9;
+    return benefit_of_clicks(tried_.for_clicks, tried_.now, severities) > 1e-9;
   });
   const double share =
       (static_cast<double>(helps) + 1.0) / (static_cast<double>(draws.size()) + 2.0);
@@ -104,7 +106,7 @@ std::size_t Choice::most_eased(std::size_t click) const {
   double most = -1.0;
   for (std::size_t k = 0; k < measured_.size(); ++k) {
     const double gain = tried_.now[k] - outcome.mean(k);
-    if (moves_for(measured_[k].kind).empty() || gain <= most) continue;
+    if (!tried_.for_clicks[k] || gain <= most) continue;
     best = k;
     most = gain;
   }
@@ -145,13 +147,16 @@ std::string Choice::why(std::size_t click) const {
   const Outcome& outcome = tried_.of_clicks[click];
   const std::size_t eased = most_eased(click);
   const Symptom& symptom = measured_[eased];
-  std::string text = fmt::format(
-      "{} {:.3g} {} (aim {:.3g}, 90 % interval {:.3g} to {:.3g}); ridden again over the same "
-      "ground it comes {:.0f} % of the way to its aim",
-      words(symptom.kind), symptom.value, unit(symptom.kind), symptom.aim, symptom.low,
-      symptom.high, 100.0 * share_of_way(outcome, eased));
+  std::string text =
+      fmt::format("{} {:.3g} {} (aim {:.3g}, 90 % interval {:.3g} to {:.3g})", words(symptom.kind),
+                  symptom.value, unit(symptom.kind), symptom.aim, symptom.low, symptom.high);
+  if (symptom.kind == SymptomKind::rides_deep || symptom.kind == SymptomKind::rides_high)
+    text += fmt::format(", where spring and weight alone would put it at {:.3g}",
+                        *static_sag_percent(ride_));
+  text += fmt::format("; ridden again over the same ground it comes {:.0f} % of the way to its aim",
+                      100.0 * share_of_way(outcome, eased));
   for (std::size_t k = 0; k < measured_.size(); ++k)
-    if (k != eased && tried_.now[k] > 0.0 && outcome.mean(k) < tried_.now[k] - least_benefit)
+    if (k != eased && eases(outcome, k))
       text += fmt::format("; it also eases: {}", words(measured_[k].kind));
   for (std::size_t k = 0; k < measured_.size(); ++k)
     if (outcome.mean(k) > tried_.now[k] + worth_watching)
@@ -174,6 +179,10 @@ Step Choice::step_of(std::size_t click) const {
   return step;
 }
 
+bool Choice::eases(const Outcome& outcome, std::size_t symptom) const {
+  return outcome.mean(symptom) < tried_.now[symptom] - least_benefit;
+}
+
 bool Choice::reaches(const Outcome& outcome, std::size_t symptom) const {
   return outcome.mean(symptom) <= (1.0 - reached_share) * tried_.now[symptom];
 }
@@ -190,18 +199,19 @@ std::optional<std::size_t> Choice::best_part(std::size_t symptom) const {
   std::optional<std::size_t> best;
   for (std::size_t p = 0; p < tried_.parts.size(); ++p) {
     const Outcome& outcome = tried_.of_parts[p];
+    if (part_for(measured_[symptom].kind) != tried_.parts[p].firmer) continue;
     if (!reaches(outcome, symptom) || makes_worse(outcome)) continue;
     if (!best || (1.0 - equal_share) * gain(p) > gain(*best)) best = p;
   }
   return best;
 }
 
-// A clear symptom that the advised step does not reach goes to the part that eases it most.
+// A clear symptom that the advised step does not ease goes to the part that eases it most.
 std::optional<Handover> Choice::handover_of(std::size_t symptom,
                                             const std::optional<std::size_t>& step) const {
   const Symptom& one = measured_[symptom];
   if (tried_.now[symptom] < 1.0 || one.certainty() < options_.least_confidence) return std::nullopt;
-  if (step && reaches(tried_.of_clicks[*step], symptom)) return std::nullopt;
+  if (step && eases(tried_.of_clicks[*step], symptom)) return std::nullopt;
   const std::optional<std::size_t> best = best_part(symptom);
   const Receiver& usual = receiver_of(one.kind);
   if (!best) return Handover{one, usual.to, usual.why};

@@ -1,6 +1,9 @@
 #include "rules.hpp"
 
 #include <map>
+#include <optional>
+
+#include "clickwise/advice/find_symptoms.hpp"
 
 namespace clickwise::advice {
 
@@ -74,6 +77,20 @@ const std::vector<Move>& moves_for(SymptomKind kind) {
   return found == moves.end() ? none : found->second;
 }
 
+std::optional<bool> part_for(SymptomKind kind) {
+  switch (kind) {
+    case SymptomKind::hard_bottoming:
+    case SymptomKind::slow_bottoming:
+    case SymptomKind::rides_deep:
+      return firmer;
+    case SymptomKind::rides_high:
+    case SymptomKind::unused_travel:
+      return softer;
+    default:
+      return std::nullopt;
+  }
+}
+
 const Receiver& receiver_of(SymptomKind kind) {
   return receivers.at(kind);
 }
@@ -82,6 +99,13 @@ const Receiver& receiver_without_damper(SymptomKind kind) {
   static const Receiver bike_file{
       "bike file", "it does not describe the damper: with its clicks a step can be named"};
   return moves_for(kind).empty() ? receiver_of(kind) : bike_file;
+}
+
+bool is_for_clicks(const Symptom& symptom, const EndRide& ride) {
+  if (symptom.kind != SymptomKind::rides_deep && symptom.kind != SymptomKind::rides_high)
+    return !moves_for(symptom.kind).empty();
+  const std::optional<double> sag = static_sag_percent(ride);
+  return sag && symptom.sign * (symptom.aim - *sag) > aim_tolerance(symptom.kind);
 }
 
 std::string doubt_words(const damper::Damper& damper, const damper::AdjusterRange& range) {

@@ -2,9 +2,11 @@
 // none can. All rules: common practice of the trade, no source.
 #pragma once
 
+#include <optional>
 #include <string>
 #include <vector>
 
+#include "clickwise/advice/end_ride.hpp"
 #include "clickwise/advice/symptom.hpp"
 #include "clickwise/damper/damper.hpp"
 
@@ -15,8 +17,16 @@ struct Move {
   bool firmer = false;  // towards closed
 };
 
+// Whether clicks can be the cure. Mean travel off its aim is the spring's job where the end would
+// stand off it too; where it would stand within the aim, the damper holds it there while riding.
+bool is_for_clicks(const Symptom& symptom, const EndRide& ride);
+
 // Moves that ease the symptom, the most direct first; empty when it is not a job for an adjuster.
 const std::vector<Move>& moves_for(SymptomKind kind);
+
+// Whether a firmer spring, smaller chamber or stronger bumper (true) or a softer one (false) can
+// ease it; empty when it is not a matter of these.
+std::optional<bool> part_for(SymptomKind kind);
 
 struct Receiver {
   std::string to;

@@ -1,5 +1,7 @@
 #include "trials.hpp"
 
+#include <fmt/format.h>
+
 #include <cstdlib>
 #include <variant>
 
@@ -48,19 +50,22 @@ std::vector<PartTrial> part_trials(const EndRide& ride) {
   const std::optional<bike::Spring>& spring = ride.end->spring;
   if (!spring) return {};
   std::vector<PartTrial> trials;
-  trials.push_back({"spring", "10 % more spring force",
-                    with_spring(ride, [](bike::Spring& own) { scale_spring(own, 1.1); })});
-  trials.push_back({"spring", "10 % less spring force",
-                    with_spring(ride, [](bike::Spring& own) { scale_spring(own, 0.9); })});
+  for (const int percent : {10, 20, -10, -20}) {
+    const double factor = 1.0 + 0.01 * percent;
+    trials.push_back(
+        {"spring",
+         fmt::format("{} % {} spring force", std::abs(percent), percent > 0 ? "more" : "less"),
+         percent > 0, with_spring(ride, [&](bike::Spring& own) { scale_spring(own, factor); })});
+  }
   const auto* air = std::get_if<bike::AirSpring>(&spring->kind);
   if (air && 0.9 * air->volume_m3 > 1.05 * air->area_m2 * ride.end->stroke_m)
     trials.push_back(
-        {"volume", "an air chamber a tenth smaller", with_spring(ride, [](bike::Spring& own) {
+        {"volume", "an air chamber a tenth smaller", true, with_spring(ride, [](bike::Spring& own) {
            std::get<bike::AirSpring>(own.kind).volume_m3 *= 0.9;
          })});
   else if (spring->bumper)
     trials.push_back(
-        {"bumper", "a bumper half as strong again",
+        {"bumper", "a bumper half as strong again", true,
          with_spring(ride, [](bike::Spring& own) { own.bumper->end_force_n *= 1.5; })});
   return trials;
 }

@@ -22,10 +22,11 @@ std::vector<ClickTrial> click_trials(const EndRide& ride, int most_clicks);
 struct PartTrial {
   std::string part;   // "spring", "volume"
   std::string words;  // "10 % more spring force"
+  bool firmer = true;
   sim::VehicleEnd end;
 };
 
-// Spring force 10 % up and down, and an end of the stroke that rises more steeply (an air chamber
+// Spring force 10 and 20 % up and down, and an end of the stroke that rises more steeply (an air chamber
 // a tenth smaller, or a bumper half as strong again). Empty without a spring.
 std::vector<PartTrial> part_trials(const EndRide& ride);
 

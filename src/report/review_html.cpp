@@ -102,8 +102,7 @@ std::string first_section(const advice::Advice& advice) {
     html += step_items(advice.steps[i]);
   }
   for (const advice::Handover& handover : advice.handovers)
-    html += "<p>Not for an adjuster: " + escaped(symptom_words(handover.symptom)) +
-            "; look at the " + escaped(handover.to) + ": " + escaped(handover.why) + ".</p>\n";
+    html += "<p>" + escaped(handover_words(handover)) + "</p>\n";
   for (const std::string& check : advice.checks)
     html += "<p>Check first: " + escaped(check) + ".</p>\n";
   for (const std::string& note : advice.notes) html += "<p>Note: " + escaped(note) + ".</p>\n";

@@ -87,10 +87,7 @@ void write_advice(Writer& out, const advice::Advice& advice) {
     }
   }
   for (const advice::Handover& handover : advice.handovers)
-    out.item("", fmt::format(
-                     "{}: {}; look at the {}: {}.",
-                     handover.to == "bike file" ? "No click can be named" : "Not for an adjuster",
-                     symptom_words(handover.symptom), handover.to, handover.why));
+    out.item("", handover_words(handover));
   for (const std::string& check : advice.checks) out.item("", "Check first: " + check + ".");
   for (const std::string& note : advice.notes) out.item("", "Note: " + note + ".");
 }

@@ -71,6 +71,15 @@ std::string symptom_words(const advice::Symptom& symptom) {
                      symptom.aim);
 }
 
+std::string handover_words(const advice::Handover& handover) {
+  const bool unnamed = handover.to == "bike file";
+  const bool service = handover.to == "service";
+  return fmt::format("{}: {}; {} {}: {}.",
+                     unnamed ? "No click can be named" : "Not for an adjuster",
+                     symptom_words(handover.symptom), service ? "for a" : "look at the",
+                     handover.to, handover.why);
+}
+
 std::string split_source_words(workflow::SplitSource source) {
   switch (source) {
     case workflow::SplitSource::asked:

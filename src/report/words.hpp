@@ -28,6 +28,9 @@ std::vector<std::string> predictions_words(const std::vector<advice::Prediction>
 // "packs down 3.1 mm per hit (aim 2)"
 std::string symptom_words(const advice::Symptom& symptom);
 
+// "Not for an adjuster: ...; look at the spring: ..."
+std::string handover_words(const advice::Handover& handover);
+
 // "asked for", "the knee of the damper curve", ...
 std::string split_source_words(workflow::SplitSource source);
 

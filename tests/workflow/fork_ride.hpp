@@ -19,10 +19,29 @@ struct Fork {
   double valve_closed_n = 620.0;
   double valve_open_n = 140.0;
   int high_speed_compression = 6;  // of 12
-  int low_speed_rebound = 9;       // of 18
+  double valve_slope_n_s_m = 180.0;
+  int low_speed_rebound = 9;  // of 18
   double rebound_valve_n = 90.0;
   double rebound_slope_n_s_m = 520.0;
   double rider_kg = 78.0;  // as the bike file says
+  std::string unsprung_mass = "unsprung_mass_kg = 2.9";
+  std::string damper = {};  // the table's text in place of the figures above
+
+  std::string hydraulic() const {
+    return fmt::format(R"(kind = "hydraulic"
+[front.damper.compression]
+bleed = {{ closed_mm_s = {}, open_mm_s = 190.0, clicks = 16, setting = {} }}
+valve = {{ closed_n = {}, open_n = {}, clicks = 12, setting = {}, slope_n_s_m = {} }}
+port = {{ n_s2_m2 = 22.0 }}
+[front.damper.rebound]
+bleed = {{ closed_mm_s = 25.0, open_mm_s = 320.0, clicks = 18, setting = {} }}
+valve = {{ fixed_n = {}, slope_n_s_m = {} }}
+port = {{ n_s2_m2 = 30.0 }}
+)",
+                       compression_closed_mm_s, low_speed_compression, valve_closed_n, valve_open_n,
+                       high_speed_compression, valve_slope_n_s_m, low_speed_rebound,
+                       rebound_valve_n, rebound_slope_n_s_m);
+  }
 
   std::string text() const {
     return fmt::format(R"(schema = "clickwise-bike-1"
@@ -36,7 +55,7 @@ mass_kg = 16.2
 front_share = 0.42
 [front]
 stroke_mm = 170.0
-unsprung_mass_kg = 2.9
+{}
 friction_n = 15.0
 tyre = {{ stiffness_n_mm = 90.0, damping_n_s_m = 150.0 }}
 split = {{ compression_mm_s = 700.0, rebound_mm_s = 700.0 }}
@@ -49,19 +68,8 @@ kind = "table"
 points = {}
 bumper = {{ length_mm = 12.0, end_force_n = 2500.0 }}
 [front.damper]
-kind = "hydraulic"
-[front.damper.compression]
-bleed = {{ closed_mm_s = {}, open_mm_s = 190.0, clicks = 16, setting = {} }}
-valve = {{ closed_n = {}, open_n = {}, clicks = 12, setting = {}, slope_n_s_m = 180.0 }}
-port = {{ n_s2_m2 = 22.0 }}
-[front.damper.rebound]
-bleed = {{ closed_mm_s = 25.0, open_mm_s = 320.0, clicks = 18, setting = {} }}
-valve = {{ fixed_n = {}, slope_n_s_m = {} }}
-port = {{ n_s2_m2 = 30.0 }}
-)",
-                       rider_kg, spring, compression_closed_mm_s, low_speed_compression,
-                       valve_closed_n, valve_open_n, high_speed_compression, low_speed_rebound,
-                       rebound_valve_n, rebound_slope_n_s_m);
+{})",
+                       rider_kg, unsprung_mass, spring, damper.empty() ? hydraulic() : damper);
   }
 };
 
