@@ -71,6 +71,7 @@ private:
   Step step_of(std::size_t click) const;
   bool eases(const Outcome& outcome, std::size_t symptom) const;
   bool reaches(const Outcome& outcome, std::size_t symptom) const;
+  bool sag_is_off() const;
   std::optional<std::size_t> best_part(std::size_t symptom) const;
   std::optional<Handover> handover_of(std::size_t symptom,
                                       const std::optional<std::size_t>& step) const;
@@ -187,8 +188,19 @@ bool Choice::reaches(const Outcome& outcome, std::size_t symptom) const {
   return outcome.mean(symptom) <= (1.0 - reached_share) * tried_.now[symptom];
 }
 
+// Whether the end stands too deep or too high on its spring: clearly off, and not for clicks.
+bool Choice::sag_is_off() const {
+  for (std::size_t k = 0; k < measured_.size(); ++k) {
+    const SymptomKind kind = measured_[k].kind;
+    const bool mean_travel = kind == SymptomKind::rides_deep || kind == SymptomKind::rides_high;
+    if (mean_travel && tried_.now[k] >= 1.0 && !tried_.for_clicks[k]) return true;
+  }
+  return false;
+}
+
 // The part that takes most severity away in all, of those that reach the symptom and make none
-// clearly worse; between equals the one that a setter turns to first.
+// clearly worse; between equals the one that a setter turns to first. Where the sag is off, nothing
+// but the spring: what it leaves shows on the next ride.
 std::optional<std::size_t> Choice::best_part(std::size_t symptom) const {
   const auto gain = [&](std::size_t p) {
     double sum = 0.0;
@@ -197,8 +209,10 @@ std::optional<std::size_t> Choice::best_part(std::size_t symptom) const {
     return sum;
   };
   std::optional<std::size_t> best;
+  const bool spring_only = sag_is_off();
   for (std::size_t p = 0; p < tried_.parts.size(); ++p) {
     const Outcome& outcome = tried_.of_parts[p];
+    if (spring_only && tried_.parts[p].part != "spring") continue;
     if (part_for(measured_[symptom].kind) != tried_.parts[p].firmer) continue;
     if (!reaches(outcome, symptom) || makes_worse(outcome)) continue;
     if (!best || (1.0 - equal_share) * gain(p) > gain(*best)) best = p;
@@ -223,13 +237,14 @@ std::optional<Handover> Choice::handover_of(std::size_t symptom,
 }
 
 std::string what_to_check(const EndRide& ride, double carried_share) {
-  const std::string_view end = bike::to_string(ride.name);
   return fmt::format(
-      "{0}: at the travel in the log the spring carries {1:.2f} times the weight that the bike "
-      "file "
-      "puts on it, so no step is named; check rider.mass_kg, chassis.front_share, {0}.spring and "
+      "{0}: by the bike file its wheel would carry {1:.2f} times its weight at the travel in the "
+      "log, "
+      "which cannot be, so no step is named; check rider.mass_kg, chassis.front_share, "
+      "{0}.spring{2} "
       "the zero of {0}.sensor's calibration",
-      end, carried_share);
+      bike::to_string(ride.name), carried_share,
+      ride.damper->assumed() ? ", the damper, which is assumed, and" : " and");
 }
 
 EndChoice Choice::choose() const {

@@ -6,6 +6,7 @@
 #include <numbers>
 
 #include "clickwise/advice/find_symptoms.hpp"
+#include "support/dyno_points.hpp"
 
 using namespace clickwise;
 using advice::SymptomKind;
@@ -170,8 +171,28 @@ TEST_CASE("an assumed damper lowers the confidence of the same step", "[advice]"
   for (int i = 0; i < 12; ++i) ride.bottom_outs.push_back({5.0 + 9.0 * i, 0.169, 1.5, 40.0});
   const double measured = advice::advise({ride.view()}, bike::Aims{}).steps.at(0).confidence;
   ride.damper = damper::Damper(larch_fork_damper(), true);
-  const double assumed = advice::advise({ride.view()}, bike::Aims{}).steps.at(0).confidence;
-  CHECK(assumed < measured);
+  const advice::Step assumed = advice::advise({ride.view()}, bike::Aims{}).steps.at(0);
+  CHECK(assumed.confidence < measured);
+  CHECK(assumed.why.find("curve is assumed") != std::string::npos);
+}
+
+TEST_CASE("clicks that the dyno table does not tell lower the confidence, and the reason says so",
+          "[advice]") {
+  WrittenRide ride = good_ride();
+  for (int i = 0; i < 12; ++i) ride.bottom_outs.push_back({5.0 + 9.0 * i, 0.169, 1.5, 40.0});
+  const auto step_on_dyno = [&](const std::vector<double>& settings) {
+    bike::End end = ride.end;
+    end.damper = test::dyno_points(damper::Damper(larch_fork_damper()),
+                                   {test::even_speeds(12, 0.02, 3.0), settings});
+    ride.damper = damper::Damper::from(end, 37.0, {});
+    return advice::advise({ride.view()}, bike::Aims{}).steps.at(0);
+  };
+  const advice::Step measured = step_on_dyno({0.0, 0.5, 1.0});
+  const advice::Step at_one_setting = step_on_dyno({0.5});
+  CHECK(at_one_setting.adjuster == measured.adjuster);
+  CHECK(at_one_setting.confidence < measured.confidence);
+  CHECK(at_one_setting.why.find("dyno table does not tell") != std::string::npos);
+  CHECK(measured.why.find("less sure") == std::string::npos);
 }
 
 TEST_CASE("mean travel outside its aims rides deep or high", "[advice]") {

@@ -102,6 +102,18 @@ void require_step(const Case& made, Adjuster adjuster, bool firmer) {
   }
 }
 
+Case wallowing() {
+  return {{.low_speed_compression = 3,
+           .valve_open_n = 10.0,
+           .high_speed_compression = 12,
+           .valve_slope_n_s_m = 80.0,
+           .low_speed_rebound = 12,
+           .rebound_valve_n = 20.0,
+           .rebound_slope_n_s_m = 80.0},
+          "B",
+          {hollow(0.5, 8.0), rocks, drop(0.3)}};
+}
+
 Case packing() {
   return {{.low_speed_rebound = 0, .rebound_valve_n = 250.0}, "C", {roots(0.08, 6, 1.2)}};
 }
@@ -118,16 +130,7 @@ Case slow_bottoming() {
 // at 0.15 m/s, one click of the valve's preload 30 N.
 TEST_CASE("support beyond the valve's opening force is preload, not bleed",
           "[workflow][advice][slow]") {
-  const Case made{{.low_speed_compression = 3,
-                   .valve_open_n = 10.0,
-                   .high_speed_compression = 12,
-                   .valve_slope_n_s_m = 80.0,
-                   .low_speed_rebound = 12,
-                   .rebound_valve_n = 20.0,
-                   .rebound_slope_n_s_m = 80.0},
-                  "B",
-                  {hollow(0.5, 8.0), rocks, drop(0.3)}};
-  require_step(made, Adjuster::high_speed_compression, true);
+  require_step(wallowing(), Adjuster::high_speed_compression, true);
 }
 
 TEST_CASE("a ride that packs is given faster rebound", "[workflow][advice][slow]") {
@@ -209,13 +212,15 @@ TEST_CASE("advice falls back to rules where the bike file knows too little, and 
   for (const advice::Step& step : fallen_back.advice.steps) CHECK_FALSE(step.seed.has_value());
 }
 
-TEST_CASE("an assumed damper makes the same step less sure, and the reason says so",
+TEST_CASE("an assumed damper makes a step less sure, and the reason says so",
           "[workflow][advice][slow]") {
-  Fork assumed = packing().fork;
+  Fork assumed = wallowing().fork;
   assumed.damper =
-      "kind = \"assumed\"\ndamping_ratio = 0.45\nshape = \"linear\"\n"
-      "[front.damper.rebound]\nbleed = { clicks = 18, setting = 0 }\n";
-  const advice::Advice advice = packing().ride(1).review_with(assumed).advice;
+      "kind = \"assumed\"\ndamping_ratio = 0.08\n"
+      "[front.damper.compression]\nbleed = { clicks = 16, setting = 8 }\nvalve = { clicks = 12, "
+      "setting = 8 }\n"
+      "[front.damper.rebound]\nbleed = { clicks = 18, setting = 9 }\n";
+  const advice::Advice advice = wallowing().ride(1).review_with(assumed).advice;
   REQUIRE(advice.steps.size() == 1);
   CHECK(advice.steps[0].confidence <= 0.85);
   CHECK(advice.steps[0].why.find("assumed") != std::string::npos);
