@@ -22,6 +22,8 @@ constexpr double worth_watching = 0.25;
 // at least this share.
 constexpr double least_benefit = 0.5;
 constexpr double reached_share = 0.3;
+// A step that takes its symptom less of the way than this is not worth a run.
+constexpr double least_way_share = 0.1;
 // Moves whose benefits differ by less than this share count as equal; the smaller one is advised.
 constexpr double equal_share = 0.1;
 // A curve, or the worth of a click, that nobody measured.
@@ -117,7 +119,8 @@ std::size_t Choice::most_eased(std::size_t click) const {
 bool Choice::fit_for_a_step(std::size_t click) const {
   return benefit(click) >= least_benefit && !makes_worse(tried_.of_clicks[click]) &&
          confidence(click) >= options_.least_confidence &&
-         measured_[most_eased(click)].certainty() >= options_.least_confidence;
+         measured_[most_eased(click)].certainty() >= options_.least_confidence &&
+         share_of_way(tried_.of_clicks[click], most_eased(click)) >= least_way_share;
 }
 
 std::optional<std::size_t> Choice::best_click() const {

@@ -216,7 +216,7 @@ TEST_CASE("an assumed damper makes a step less sure, and the reason says so",
           "[workflow][advice][slow]") {
   Fork assumed = wallowing().fork;
   assumed.damper =
-      "kind = \"assumed\"\ndamping_ratio = 0.08\n"
+      "kind = \"assumed\"\ndamping_ratio = 0.10\nshape = \"progressive\"\n"
       "[front.damper.compression]\nbleed = { clicks = 16, setting = 8 }\nvalve = { clicks = 12, "
       "setting = 8 }\n"
       "[front.damper.rebound]\nbleed = { clicks = 18, setting = 9 }\n";
