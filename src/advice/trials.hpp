@@ -26,8 +26,8 @@ struct PartTrial {
   sim::VehicleEnd end;
 };
 
-// Spring force 10 and 20 % up and down, and an end of the stroke that rises more steeply (an air chamber
-// a tenth smaller, or a bumper half as strong again). Empty without a spring.
+// Spring force 10 and 20 % up and down, and an end of the stroke that rises more steeply (an air
+// chamber a tenth smaller, or a bumper half as strong again). Empty without a spring.
 std::vector<PartTrial> part_trials(const EndRide& ride);
 
 }  // namespace clickwise::advice
