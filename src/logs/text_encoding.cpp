@@ -10,6 +10,11 @@ namespace {
 
 constexpr std::size_t bytes_looked_at = 4096;
 
+constexpr const char* packed_remedy =
+    "if it is a log of packed frames, tell the frame in the bike file, as in [log] packed = { endian "
+    "= \"little\", header_bytes = 0, frame = [[\"t_us\", \"u32\"], [\"fork_adc\", \"u16\"]] }, and "
+    "give it with --bike";
+
 struct ByteCounts {
   std::size_t even_zeros = 0;
   std::size_t odd_zeros = 0;
@@ -46,7 +51,7 @@ std::size_t check_encoding(std::string_view text, const std::string& path) {
     throw core::InputError({path, 1}, "the text is written in UTF-16", "save the log as UTF-8");
   if (counts.controls * 50 > head.size())
     throw core::InputError({path, 1}, "this is no text but binary data",
-                           "name a text log; this version reads no other kind");
+                           packed_remedy);
   const std::string_view first = text.substr(0, longest_first_line);
   if (first.find('\n') == std::string_view::npos) {
     const auto carriage = first.find('\r');

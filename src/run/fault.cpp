@@ -26,6 +26,12 @@ constexpr std::array<Row, 7> table{{
 
 std::string_view to_string(FaultKind kind) { return table.at(static_cast<std::size_t>(kind)).name; }
 
+std::optional<FaultKind> fault_kind_from(std::string_view name) {
+  for (std::size_t i = 0; i < table.size(); ++i)
+    if (table[i].name == name) return static_cast<FaultKind>(i);
+  return std::nullopt;
+}
+
 std::string_view advice(FaultKind kind) { return table.at(static_cast<std::size_t>(kind)).advice; }
 
 void FaultLedger::add(FaultKind kind, std::string_view channel, long long count, double seconds) {

@@ -1,0 +1,31 @@
+#include "clickwise/archive/run_archive.hpp"
+#include "clickwise/core/units.hpp"
+#include "names.hpp"
+
+namespace clickwise::archive {
+
+namespace {
+
+double stored(double metres) {
+  return core::from_mm(static_cast<double>(stored_mm(metres)));
+}
+
+void round_all(std::vector<double>& metres) {
+  for (double& value : metres) value = stored(value);
+}
+
+}  // namespace
+
+void round_to_stored(run::Motion& motion) {
+  round_all(motion.travel_m);
+  round_all(motion.velocity_m_s);
+  round_all(motion.velocity_sigma_m_s);
+  motion.velocity_noise_m_s = stored(motion.velocity_noise_m_s);
+  motion.reading_noise_m = stored(motion.reading_noise_m);
+}
+
+void round_to_stored(std::vector<double>& speed_m_s) {
+  for (double& value : speed_m_s) value = static_cast<double>(static_cast<float>(value));
+}
+
+}  // namespace clickwise::archive

@@ -1,0 +1,26 @@
+// One field of packed frames: where it stands, and its values.
+#pragma once
+
+#include <cstddef>
+#include <string_view>
+#include <vector>
+
+#include "clickwise/bike/bike.hpp"
+
+namespace clickwise::logs {
+
+struct FieldPlace {
+  std::size_t first_byte = 0;   // of the first frame's field, from the start of the file
+  std::size_t frame_bytes = 1;  // from frame to frame
+  bike::FieldType type = bike::FieldType::u8;
+  bool big_endian = false;
+};
+
+// Frames whose field lies wholly in the file, at most `most`.
+std::vector<double> field_values(std::string_view file, const FieldPlace& place, std::size_t most);
+
+// Share of the steps from value to value that are positive and within a factor of 3 of the usual
+// one; overflows of an unsigned counter are undone. 0 for fewer than 3 values.
+double even_share(std::string_view file, const FieldPlace& place, std::size_t most);
+
+}  // namespace clickwise::logs
