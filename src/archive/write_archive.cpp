@@ -4,6 +4,7 @@
 
 #include "clickwise/archive/run_archive.hpp"
 #include "clickwise/core/units.hpp"
+#include "clickwise/io/atomic_file.hpp"
 #include "clickwise/io/hdf5_writer.hpp"
 #include "names.hpp"
 
@@ -152,10 +153,7 @@ void write_events(io::Hdf5Writer& file, const Run& run, const Events& events) {
   air("/events/airtimes/end_s", &run::Airtime::end_s);
 }
 
-}  // namespace
-
-std::string archive_bytes(const Run& run, const Events& events) {
-  io::Hdf5Writer file;
+void write_into(io::Hdf5Writer& file, const Run& run, const Events& events) {
   write_head(file, run);
   write_log(file, run);
   write_time(file, run);
@@ -171,7 +169,16 @@ std::string archive_bytes(const Run& run, const Events& events) {
   end("/rear", run.rear);
   file.axis("/time", on_time);
   write_events(file, run, events);
-  return file.finish();
+  file.finish();
+}
+
+}  // namespace
+
+void write_archive(const std::string& path, const Run& run, const Events& events) {
+  io::write_atomically(path, [&](const std::string& draft) {
+    io::Hdf5Writer file(draft, path);
+    write_into(file, run, events);
+  });
 }
 
 }  // namespace clickwise::archive

@@ -39,9 +39,11 @@ public:
 
   explicit operator bool() const { return id_ >= 0; }
   hid_t id() const { return id_; }
-  void reset() {
-    if (id_ >= 0) close_(id_);
-    id_ = H5I_INVALID_HID;
+  void reset() { close(); }
+  // Whether it went well, as closing a file need not.
+  bool close() {
+    const hid_t id = std::exchange(id_, H5I_INVALID_HID);
+    return id < 0 || close_(id) >= 0;
   }
 
 private:

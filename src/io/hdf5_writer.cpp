@@ -3,49 +3,50 @@
 #include <hdf5_hl.h>
 
 #include <algorithm>
-#include <array>
 #include <cstring>
-#include <stdexcept>
 
+#include "clickwise/core/errors.hpp"
 #include "hdf5_handle.hpp"
 
 namespace clickwise::io {
 
 namespace {
 
-constexpr std::size_t growth_bytes = std::size_t{4} << 20U;
 constexpr std::size_t chunk_values = std::size_t{1} << 16U;
 constexpr unsigned deflate_level = 1;  // docs/decisions/archive.md: higher ones gain nothing
 
-void need(bool done, const char* what) {
-  if (!done) throw std::runtime_error(std::string("the HDF5 library failed to ") + what);
-}
-
 Hdf5Handle text_type(std::size_t size) {
   Hdf5Handle type(H5Tcopy(H5T_C_S1), H5Tclose);
-  need(H5Tset_size(type.id(), std::max<std::size_t>(size, 1)) >= 0, "size a text");
-  need(H5Tset_cset(type.id(), H5T_CSET_UTF8) >= 0 &&
-           H5Tset_strpad(type.id(), H5T_STR_NULLPAD) >= 0,
-       "lay out a text");
+  H5Tset_size(type.id(), std::max<std::size_t>(size, 1));
+  H5Tset_cset(type.id(), H5T_CSET_UTF8);
+  H5Tset_strpad(type.id(), H5T_STR_NULLPAD);
   return type;
 }
 
 // Chunks, shuffle, deflate and checksum; plain for an empty list.
 Hdf5Handle creation(std::size_t count) {
   Hdf5Handle list(H5Pcreate(H5P_DATASET_CREATE), H5Pclose);
-  need(H5Pset_obj_track_times(list.id(), false) >= 0, "leave times out");
+  H5Pset_obj_track_times(list.id(), false);
   if (count == 0) return list;
   const hsize_t chunk = std::min(count, chunk_values);
-  need(H5Pset_chunk(list.id(), 1, &chunk) >= 0 && H5Pset_shuffle(list.id()) >= 0 &&
-           H5Pset_deflate(list.id(), deflate_level) >= 0 && H5Pset_fletcher32(list.id()) >= 0,
-       "set up chunks");
+  H5Pset_chunk(list.id(), 1, &chunk);
+  H5Pset_shuffle(list.id());
+  H5Pset_deflate(list.id(), deflate_level);
+  H5Pset_fletcher32(list.id());
   return list;
 }
 
 }  // namespace
 
 struct Hdf5Writer::Open {
+  std::string path;
   Hdf5Handle file;
+
+  void need(bool done, const char* what) const {
+    if (!done)
+      throw core::JobError({path}, std::string("cannot be written (the HDF5 library failed to ") + what + ")",
+                           "check the folder, its permissions and the room on the disk");
+  }
 
   void attribute(const std::string& name, const char* attribute, hid_t type, const void* value) {
     const Hdf5Handle space(H5Screate(H5S_SCALAR), H5Sclose);
@@ -82,16 +83,16 @@ struct Hdf5Writer::Open {
   }
 };
 
-Hdf5Writer::Hdf5Writer() : open_(std::make_unique<Open>()) {
+Hdf5Writer::Hdf5Writer(const std::string& path, const std::string& named)
+    : open_(std::make_unique<Open>()) {
   const Hdf5Lock lock;
+  open_->path = named;
   const Hdf5Handle access(H5Pcreate(H5P_FILE_ACCESS), H5Pclose);
-  const Hdf5Handle creation_list(H5Pcreate(H5P_FILE_CREATE), H5Pclose);
-  // 1.8 is the first format whose headers carry checksums.
-  need(H5Pset_fapl_core(access.id(), growth_bytes, false) >= 0 &&
-           H5Pset_libver_bounds(access.id(), H5F_LIBVER_V18, H5F_LIBVER_V18) >= 0,
-       "set up a file in memory");
-  open_->file = {H5Fcreate("clickwise", H5F_ACC_TRUNC, creation_list.id(), access.id()), H5Fclose};
-  need(static_cast<bool>(open_->file), "make a file in memory");
+  // 1.8 is the first format whose headers carry checksums. Not every file system can lock.
+  H5Pset_libver_bounds(access.id(), H5F_LIBVER_V18, H5F_LIBVER_V18);
+  H5Pset_file_locking(access.id(), false, true);
+  open_->file = {H5Fcreate(path.c_str(), H5F_ACC_TRUNC, H5P_DEFAULT, access.id()), H5Fclose};
+  open_->need(static_cast<bool>(open_->file), "make the file");
 }
 
 Hdf5Writer::~Hdf5Writer() {
@@ -103,7 +104,7 @@ void Hdf5Writer::group(const std::string& name) {
   const Hdf5Lock lock;
   const Hdf5Handle made(
       H5Gcreate2(open_->file.id(), name.c_str(), H5P_DEFAULT, H5P_DEFAULT, H5P_DEFAULT), H5Gclose);
-  need(static_cast<bool>(made), "make a group");
+  open_->need(static_cast<bool>(made), "make a group");
 }
 
 void Hdf5Writer::data(const std::string& name, std::span<const double> values,
@@ -161,22 +162,17 @@ void Hdf5Writer::axis(const std::string& name, const std::vector<std::string>& o
   const Hdf5Lock lock;
   const Hdf5Handle scale(H5Dopen2(open_->file.id(), name.c_str(), H5P_DEFAULT), H5Dclose);
   const std::string label = name.substr(name.rfind('/') + 1);
-  need(scale && H5DSset_scale(scale.id(), label.c_str()) >= 0, "make an axis");
+  open_->need(scale && H5DSset_scale(scale.id(), label.c_str()) >= 0, "make an axis");
   for (const std::string& data : of) {
     const Hdf5Handle set(H5Dopen2(open_->file.id(), data.c_str(), H5P_DEFAULT), H5Dclose);
-    need(set && H5DSattach_scale(set.id(), scale.id(), 0) >= 0, "attach an axis");
+    open_->need(set && H5DSattach_scale(set.id(), scale.id(), 0) >= 0, "attach an axis");
   }
 }
 
-std::string Hdf5Writer::finish() {
+void Hdf5Writer::finish() {
   const Hdf5Lock lock;
-  need(H5Fflush(open_->file.id(), H5F_SCOPE_GLOBAL) >= 0, "flush");
-  const ssize_t size = H5Fget_file_image(open_->file.id(), nullptr, 0);
-  need(size > 0, "give its bytes");
-  std::string bytes(static_cast<std::size_t>(size), '\0');
-  need(H5Fget_file_image(open_->file.id(), bytes.data(), bytes.size()) == size, "give its bytes");
-  open_->file.reset();
-  return bytes;
+  open_->need(H5Fflush(open_->file.id(), H5F_SCOPE_GLOBAL) >= 0 && open_->file.close(),
+              "end the file");
 }
 
 }  // namespace clickwise::io

@@ -121,6 +121,7 @@ LogFacts facts_of(const ChannelTable& table, const bike::LogFormat* format) {
   facts.name = name_of(table.path);
   facts.binary_format = table.written;
   facts.contents = table.contents;
+  facts.hdf5_group = table.hdf5_group;
   facts.format = as_format(table);
   facts.notes = table.notes;
   facts.rows = table.rows;

@@ -101,6 +101,7 @@ ChannelTable hdf5_table(const std::string& path, const std::string& group,
   table.path = path;
   table.written = "HDF5, group " + group;
   table.contents = list_all(*file).lines;
+  table.hdf5_group = group;
   table.rows = commonest_length(items).first;
   std::erase_if(items, [](const io::Hdf5Item& item) { return !is_channel(item); });
   if (items.empty())

@@ -21,7 +21,6 @@ struct EndOfRun {
   double stroke_m = 0.0;
 };
 
-// A text file with the name it had, without its folder.
 struct TextFile {
   std::string name;
   std::string text;
@@ -31,8 +30,8 @@ struct TextFile {
 struct Run {
   std::string created;           // RFC 3339, UTC
   std::string program;           // "clickwise 1.2.3"
-  TextFile bike;                 // the bike file
-  std::vector<TextFile> beside;  // files that it names, as dyno tables
+  TextFile bike;                 // the bike file, named without its folder
+  std::vector<TextFile> beside;  // files that it names, as it names them: dyno tables
   std::string log_name;
   double duration_s = 0.0;   // first sample to last
   std::size_t samples = 0;   // of the log
@@ -66,8 +65,10 @@ void round_to_stored(run::Motion& motion);
 // The same for speeds, kept in m/s.
 void round_to_stored(std::vector<double>& speed_m_s);
 
-// The bytes of the archive file. The motions and speeds must be rounded to what is stored.
-std::string archive_bytes(const Run& run, const Events& events);
+// Writes the archive whole or not at all: beside its place, brought to the disk, then renamed. The
+// motions and speeds must be rounded to what is stored. Throws core::JobError where the disk does
+// not take it.
+void write_archive(const std::string& path, const Run& run, const Events& events);
 
 // Whether the file is an HDF5 file whose schema is one of this program's archives, of whatever
 // version. Throws core::InputError where there is no such file.

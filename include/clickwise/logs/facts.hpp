@@ -44,6 +44,7 @@ struct TimeGuess {
 struct LogFacts {
   std::string name;   // the file's, without its folder
   TextFormat format;  // its views into the text are empty
+  std::string hdf5_group;             // of the columns; empty: no HDF5
   std::string binary_format;          // what a log is that is no text; empty for text
   std::vector<std::string> contents;  // groups and data sets of an HDF5 file, a line each
   std::vector<ColumnFacts> columns;
