@@ -1,6 +1,6 @@
 #include <fmt/format.h>
 
-#include <array>
+#include <algorithm>
 #include <cmath>
 
 #include "clickwise/archive/run_archive.hpp"
@@ -47,22 +47,12 @@ public:
     if (!file_.has(name)) refuse(name + " is missing");
   }
 
-  // A series on the time base, its values times `scale`.
-  std::vector<double> series(const std::string& name, std::size_t samples, double scale) const {
-    need(name);
-    const std::vector<float> floats = file_.floats(name);
-    check_length(name, floats.size(), samples);
-    std::vector<double> values(samples);
-    for (std::size_t i = 0; i < samples; ++i) values[i] = static_cast<double>(floats[i]) * scale;
-    return values;
-  }
-
   std::vector<std::uint8_t> mask(const std::string& name, std::size_t samples) const {
     need(name);
     std::vector<std::uint8_t> values = file_.bytes(name);
     check_length(name, values.size(), samples);
-    for (const std::uint8_t value : values)
-      if (value > 1) refuse(name + " holds other values than 0 and 1");
+    if (!values.empty() && *std::max_element(values.begin(), values.end()) > 1)
+      refuse(name + " holds other values than 0 and 1");
     return values;
   }
 
@@ -121,14 +111,15 @@ void read_log(const Reader& reader, Run& run) {
 
 void read_time(const Reader& reader, Run& run) {
   reader.need("/time");
-  run.riding = reader.file().has("/riding") ? reader.file().bytes("/riding")
-                                            : std::vector<std::uint8_t>{};
+  const auto items = reader.file().items("/");
+  const auto time = std::find_if(items.begin(), items.end(),
+                                 [](const io::Hdf5Item& item) { return item.name == "time"; });
+  if (time == items.end() || time->shape.size() != 1 || time->shape[0] < 2)
+    reader.refuse("/time is no axis of two samples or more");
   run.time = {reader.number_attribute("/time", "start_s"),
-              reader.positive_attribute("/time", "rate_hz"), run.riding.size()};
+              reader.positive_attribute("/time", "rate_hz"), time->shape[0]};
+  if (!std::isfinite(run.time.start_s)) reader.refuse("the attribute start_s of /time is no number");
   run.riding = reader.mask("/riding", run.time.samples);
-  if (run.time.samples < 2) reader.refuse("/riding holds less than two samples");
-  if (reader.file().has("/speed_m_s"))
-    run.speed_m_s = reader.series("/speed_m_s", run.time.samples, 1.0);
 }
 
 std::optional<EndOfRun> read_end(const Reader& reader, const std::string& group,
@@ -140,12 +131,6 @@ std::optional<EndOfRun> read_end(const Reader& reader, const std::string& group,
   const auto source = source_from(reader.text_attribute(group, "measured_by"));
   if (!source) reader.refuse("the attribute measured_by of " + group + " is an unknown word");
   motion.source = *source;
-  const auto series = [&](const char* name) {
-    return reader.series(group + name, time.samples, core::metres_per_mm);
-  };
-  motion.travel_m = series("/travel_mm");
-  motion.velocity_m_s = series("/velocity_mm_s");
-  motion.velocity_sigma_m_s = series("/velocity_sigma_mm_s");
   motion.valid = reader.mask(group + "/valid", time.samples);
   const auto in_mm = [&](const char* name) {
     return core::from_mm(reader.number_attribute(group, name));
@@ -156,6 +141,31 @@ std::optional<EndOfRun> read_end(const Reader& reader, const std::string& group,
   motion.cutoff_hz = reader.number_attribute(group, "cutoff_hz");
   motion.smoothing = reader.text_attribute(group, "smoothing");
   return end;
+}
+
+// The series of both ends and the speed, at once.
+void read_series(const Reader& reader, Run& run) {
+  std::vector<io::Hdf5Scaled> wanted;
+  std::vector<std::vector<double>*> homes;
+  const auto want = [&](const std::string& name, double scale, std::vector<double>& home) {
+    reader.need(name);
+    wanted.push_back({name, scale});
+    homes.push_back(&home);
+  };
+  const auto want_end = [&](const std::string& group, std::optional<EndOfRun>& end) {
+    if (!end) return;
+    want(group + "/travel_mm", core::metres_per_mm, end->motion.travel_m);
+    want(group + "/velocity_mm_s", core::metres_per_mm, end->motion.velocity_m_s);
+    want(group + "/velocity_sigma_mm_s", core::metres_per_mm, end->motion.velocity_sigma_m_s);
+  };
+  want_end("/front", run.front);
+  want_end("/rear", run.rear);
+  if (reader.file().has("/speed_m_s")) want("/speed_m_s", 1.0, run.speed_m_s);
+  auto values = reader.file().numbers(wanted);
+  for (std::size_t i = 0; i < homes.size(); ++i) {
+    reader.check_length(wanted[i].name, values[i].size(), run.time.samples);
+    *homes[i] = std::move(values[i]);
+  }
 }
 
 }  // namespace
@@ -188,6 +198,7 @@ Run read_archive(const std::string& path) {
   run.front = read_end(reader, "/front", run.time);
   run.rear = read_end(reader, "/rear", run.time);
   if (!run.front && !run.rear) reader.refuse("neither /front nor /rear is there");
+  read_series(reader, run);
   return run;
 }
 

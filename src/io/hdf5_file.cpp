@@ -6,6 +6,8 @@
 
 #include "clickwise/core/errors.hpp"
 #include "clickwise/io/mapped_file.hpp"
+#include "clickwise/core/parallel.hpp"
+#include "float_chunks.hpp"
 #include "hdf5_handle.hpp"
 
 namespace clickwise::io {
@@ -107,7 +109,10 @@ herr_t collect(hid_t, const char* name, const H5L_info_t* info, void* names) {
 }  // namespace
 
 struct Hdf5File::Open {
+  explicit Open(const std::string& name) : path(name), mapped(name) {}
+
   std::string path;
+  MappedFile mapped;
   Hdf5Handle file;
 
   [[noreturn]] void refuse(const std::string& wrong, const std::string& remedy) const {
@@ -213,9 +218,8 @@ bool is_hdf5(std::string_view bytes) {
   return false;
 }
 
-Hdf5File::Hdf5File(const std::string& path) : path_(path), open_(std::make_unique<Open>()) {
-  open_->path = path;
-  if (!is_hdf5(MappedFile(path).text()))
+Hdf5File::Hdf5File(const std::string& path) : path_(path), open_(std::make_unique<Open>(path)) {
+  if (!is_hdf5(open_->mapped.text()))
     open_->refuse("this is no HDF5 file", "give the file that the logger or clickwise import wrote");
   const Hdf5Lock lock;
   const Hdf5Handle access(H5Pcreate(H5P_FILE_ACCESS), H5Pclose);
@@ -256,8 +260,22 @@ std::vector<double> Hdf5File::numbers(const std::string& name) const {
   return open_->values<double>(name, H5T_NATIVE_DOUBLE);
 }
 
-std::vector<float> Hdf5File::floats(const std::string& name) const {
-  return open_->values<float>(name, H5T_NATIVE_FLOAT);
+std::vector<std::vector<double>> Hdf5File::numbers(const std::vector<Hdf5Scaled>& wanted) const {
+  std::vector<std::optional<FloatChunks>> chunks;
+  for (const Hdf5Scaled& one : wanted) {
+    const Hdf5Lock lock;
+    chunks.push_back(float_chunks(open_->data_set(one.name).data.id(), open_->mapped.text()));
+  }
+  std::vector<std::vector<double>> values(wanted.size());
+  core::parallel_for(wanted.size(), [&](std::size_t i) {
+    if (chunks[i]) {
+      if (!decode(*chunks[i], wanted[i].scale, values[i])) open_->refuse_damaged(wanted[i].name);
+      return;
+    }
+    values[i] = numbers(wanted[i].name);
+    for (double& value : values[i]) value *= wanted[i].scale;
+  });
+  return values;
 }
 
 std::vector<std::uint8_t> Hdf5File::bytes(const std::string& name) const {

@@ -6,6 +6,7 @@
 #include <cstring>
 
 #include "clickwise/core/errors.hpp"
+#include "float_chunks.hpp"
 #include "hdf5_handle.hpp"
 
 namespace clickwise::io {
@@ -13,7 +14,7 @@ namespace clickwise::io {
 namespace {
 
 constexpr std::size_t chunk_values = std::size_t{1} << 16U;
-constexpr unsigned deflate_level = 1;  // docs/decisions/archive.md: higher ones gain nothing
+constexpr unsigned deflate_level = 6;
 
 Hdf5Handle text_type(std::size_t size) {
   Hdf5Handle type(H5Tcopy(H5T_C_S1), H5Tclose);
@@ -23,8 +24,9 @@ Hdf5Handle text_type(std::size_t size) {
   return type;
 }
 
-// Chunks, shuffle, deflate and checksum; plain for an empty list.
-Hdf5Handle creation(std::size_t count) {
+// Chunks, shuffle and deflate, and the library's own checksum where a chunk may stay unpacked;
+// plain for an empty list.
+Hdf5Handle creation(std::size_t count, bool checksum = true) {
   Hdf5Handle list(H5Pcreate(H5P_DATASET_CREATE), H5Pclose);
   H5Pset_obj_track_times(list.id(), false);
   if (count == 0) return list;
@@ -32,7 +34,7 @@ Hdf5Handle creation(std::size_t count) {
   H5Pset_chunk(list.id(), 1, &chunk);
   H5Pset_shuffle(list.id());
   H5Pset_deflate(list.id(), deflate_level);
-  H5Pset_fletcher32(list.id());
+  if (checksum) H5Pset_fletcher32(list.id());
   return list;
 }
 
@@ -71,12 +73,17 @@ struct Hdf5Writer::Open {
     attribute(name, "units", units);
   }
 
-  void write(const std::string& name, hid_t stored, hid_t memory, hid_t space, hid_t list,
-             const void* values) {
-    const Hdf5Handle set(
+  Hdf5Handle make(const std::string& name, hid_t stored, hid_t space, hid_t list) {
+    Hdf5Handle set(
         H5Dcreate2(file.id(), name.c_str(), stored, space, H5P_DEFAULT, list, H5P_DEFAULT),
         H5Dclose);
     need(static_cast<bool>(set), "make a data set");
+    return set;
+  }
+
+  void write(const std::string& name, hid_t stored, hid_t memory, hid_t space, hid_t list,
+             const void* values) {
+    const Hdf5Handle set = make(name, stored, space, list);
     if (values)
       need(H5Dwrite(set.id(), memory, H5S_ALL, H5S_ALL, H5P_DEFAULT, values) >= 0,
            "write a data set");
@@ -114,7 +121,20 @@ void Hdf5Writer::data(const std::string& name, std::span<const double> values,
 
 void Hdf5Writer::data(const std::string& name, std::span<const float> values,
                       std::string_view units) {
-  open_->data(name, H5T_IEEE_F32LE, H5T_NATIVE_FLOAT, values.data(), values.size(), units);
+  const Hdf5Lock lock;
+  const hsize_t length = values.size();
+  const Hdf5Handle space(H5Screate_simple(1, &length, nullptr), H5Sclose);
+  const Hdf5Handle list = creation(values.size(), false);
+  const Hdf5Handle set = open_->make(name, H5T_IEEE_F32LE, space.id(), list.id());
+  const std::size_t chunk = std::min(values.size(), chunk_values);
+  for (std::size_t first = 0; first < values.size(); first += chunk) {
+    const hsize_t offset = first;
+    const std::string packed =
+        encode(values.subspan(first, std::min(chunk, values.size() - first)), chunk);
+    open_->need(H5Dwrite_chunk(set.id(), H5P_DEFAULT, 0, &offset, packed.size(), packed.data()) >= 0,
+                "write a data set");
+  }
+  open_->attribute(name, "units", units);
 }
 
 void Hdf5Writer::data(const std::string& name, std::span<const std::uint8_t> values,

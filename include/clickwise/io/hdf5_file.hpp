@@ -26,6 +26,12 @@ struct Hdf5Item {
   std::string units;               // the text of its attribute `units`; empty without one
 };
 
+// A data set of numbers, each to be multiplied.
+struct Hdf5Scaled {
+  std::string name;
+  double scale = 1.0;
+};
+
 // An open file. Names are paths from the root, "/front/travel_mm". Every failure is a
 // core::InputError naming the file. The library underneath takes one caller at a time: calls from
 // several threads wait for each other.
@@ -47,7 +53,9 @@ public:
   // A data set of one dimension and its values, as they are, or turned into the type asked for
   // (integers beyond 2^53 become the nearest double).
   std::vector<double> numbers(const std::string& name) const;
-  std::vector<float> floats(const std::string& name) const;
+  // Several at once, each value times its scale; those that Hdf5Writer wrote as floats, on all
+  // cores.
+  std::vector<std::vector<double>> numbers(const std::vector<Hdf5Scaled>& wanted) const;
   std::vector<std::uint8_t> bytes(const std::string& name) const;
   // One text, or a list of them. Bytes are given as they stand.
   std::string text(const std::string& name) const;

@@ -11,7 +11,7 @@
 namespace clickwise::io {
 
 // Names are paths from the root; the groups in front must be there. Data sets are cut into chunks,
-// their bytes sorted by place (shuffle), deflated and given a checksum; lists without entries and
+// their bytes sorted by place (shuffle), deflated and given a checksum (of floats it is zlib's); lists without entries and
 // single texts are stored plain. Every data set gets its `units`. Readable by HDF5 1.8 (2008) and
 // later. Throws core::JobError where the disk does not take it.
 class Hdf5Writer {
