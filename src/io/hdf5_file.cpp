@@ -7,7 +7,7 @@
 #include "clickwise/core/errors.hpp"
 #include "clickwise/io/mapped_file.hpp"
 #include "clickwise/core/parallel.hpp"
-#include "float_chunks.hpp"
+#include "packed_chunks.hpp"
 #include "hdf5_handle.hpp"
 
 namespace clickwise::io {
@@ -261,10 +261,11 @@ std::vector<double> Hdf5File::numbers(const std::string& name) const {
 }
 
 std::vector<std::vector<double>> Hdf5File::numbers(const std::vector<Hdf5Scaled>& wanted) const {
-  std::vector<std::optional<FloatChunks>> chunks;
+  std::vector<std::optional<PackedChunks>> chunks;
   for (const Hdf5Scaled& one : wanted) {
     const Hdf5Lock lock;
-    chunks.push_back(float_chunks(open_->data_set(one.name).data.id(), open_->mapped.text()));
+    chunks.push_back(packed_chunks(open_->data_set(one.name).data.id(), H5T_IEEE_F32LE,
+                                   open_->mapped.text()));
   }
   std::vector<std::vector<double>> values(wanted.size());
   core::parallel_for(wanted.size(), [&](std::size_t i) {
@@ -279,7 +280,13 @@ std::vector<std::vector<double>> Hdf5File::numbers(const std::vector<Hdf5Scaled>
 }
 
 std::vector<std::uint8_t> Hdf5File::bytes(const std::string& name) const {
-  return open_->values<std::uint8_t>(name, H5T_NATIVE_UINT8);
+  const Hdf5Lock lock;
+  const auto chunks =
+      packed_chunks(open_->data_set(name).data.id(), H5T_STD_U8LE, open_->mapped.text());
+  if (!chunks) return open_->values<std::uint8_t>(name, H5T_NATIVE_UINT8);
+  std::vector<std::uint8_t> values;
+  if (!decode(*chunks, values)) open_->refuse_damaged(name);
+  return values;
 }
 
 std::vector<std::string> Hdf5File::texts(const std::string& name) const {

@@ -6,7 +6,7 @@
 #include <cstring>
 
 #include "clickwise/core/errors.hpp"
-#include "float_chunks.hpp"
+#include "packed_chunks.hpp"
 #include "hdf5_handle.hpp"
 
 namespace clickwise::io {
@@ -73,6 +73,25 @@ struct Hdf5Writer::Open {
     attribute(name, "units", units);
   }
 
+  template <class Value>
+  void packed(const std::string& name, hid_t type, std::span<const Value> values,
+              std::string_view units) {
+    const Hdf5Lock lock;
+    const hsize_t length = values.size();
+    const Hdf5Handle space(H5Screate_simple(1, &length, nullptr), H5Sclose);
+    const Hdf5Handle list = creation(values.size(), false);
+    const Hdf5Handle set = make(name, type, space.id(), list.id());
+    const std::size_t chunk = std::min(values.size(), chunk_values);
+    for (std::size_t first = 0; first < values.size(); first += chunk) {
+      const hsize_t offset = first;
+      const std::string bytes =
+          encode(values.subspan(first, std::min(chunk, values.size() - first)), chunk);
+      need(H5Dwrite_chunk(set.id(), H5P_DEFAULT, 0, &offset, bytes.size(), bytes.data()) >= 0,
+           "write a data set");
+    }
+    attribute(name, "units", units);
+  }
+
   Hdf5Handle make(const std::string& name, hid_t stored, hid_t space, hid_t list) {
     Hdf5Handle set(
         H5Dcreate2(file.id(), name.c_str(), stored, space, H5P_DEFAULT, list, H5P_DEFAULT),
@@ -121,25 +140,12 @@ void Hdf5Writer::data(const std::string& name, std::span<const double> values,
 
 void Hdf5Writer::data(const std::string& name, std::span<const float> values,
                       std::string_view units) {
-  const Hdf5Lock lock;
-  const hsize_t length = values.size();
-  const Hdf5Handle space(H5Screate_simple(1, &length, nullptr), H5Sclose);
-  const Hdf5Handle list = creation(values.size(), false);
-  const Hdf5Handle set = open_->make(name, H5T_IEEE_F32LE, space.id(), list.id());
-  const std::size_t chunk = std::min(values.size(), chunk_values);
-  for (std::size_t first = 0; first < values.size(); first += chunk) {
-    const hsize_t offset = first;
-    const std::string packed =
-        encode(values.subspan(first, std::min(chunk, values.size() - first)), chunk);
-    open_->need(H5Dwrite_chunk(set.id(), H5P_DEFAULT, 0, &offset, packed.size(), packed.data()) >= 0,
-                "write a data set");
-  }
-  open_->attribute(name, "units", units);
+  open_->packed(name, H5T_IEEE_F32LE, values, units);
 }
 
 void Hdf5Writer::data(const std::string& name, std::span<const std::uint8_t> values,
                       std::string_view units) {
-  open_->data(name, H5T_STD_U8LE, H5T_NATIVE_UINT8, values.data(), values.size(), units);
+  open_->packed(name, H5T_STD_U8LE, values, units);
 }
 
 void Hdf5Writer::data(const std::string& name, std::span<const std::int64_t> values,

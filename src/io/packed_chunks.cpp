@@ -1,4 +1,4 @@
-#include "float_chunks.hpp"
+#include "packed_chunks.hpp"
 
 #include <libdeflate.h>
 #include <zlib.h>
@@ -15,7 +15,7 @@ namespace clickwise::io {
 namespace {
 
 constexpr std::size_t float_bytes = 4;
-constexpr double worth_packing = 0.8;  // of a plane's bytes: what is left must be less
+constexpr double worth_packing = 0.4;  // of a plane's bytes: what is left must be less
 constexpr int deflate_level = 6;       // docs/decisions/archive.md
 constexpr std::size_t largest_chunk_values = std::size_t{1} << 24U;
 
@@ -32,12 +32,12 @@ bool filters_are_ours(hid_t list) {
 }
 
 // Values per chunk; 0: another layout.
-std::size_t chunk_length(hid_t data) {
+std::size_t chunk_length(hid_t data, hid_t wanted) {
   const Hdf5Handle list(H5Dget_create_plist(data), H5Pclose);
   const Hdf5Handle type(H5Dget_type(data), H5Tclose);
   hsize_t length = 0;
   if (!list || H5Pget_layout(list.id()) != H5D_CHUNKED ||
-      H5Tequal(type.id(), H5T_IEEE_F32LE) <= 0 || !filters_are_ours(list.id()) ||
+      H5Tequal(type.id(), wanted) <= 0 || !filters_are_ours(list.id()) ||
       H5Pget_chunk(list.id(), 1, &length) != 1 || length > largest_chunk_values)
     return 0;
   return static_cast<std::size_t>(length);
@@ -75,14 +75,54 @@ void unshuffle(const std::uint8_t* planes, std::size_t plane, double scale, doub
   }
 }
 
+// One zlib stream of planes, one after the other.
+std::string pack(std::string_view bytes, std::size_t planes) {
+  const std::size_t length = bytes.size() / planes;
+  z_stream stream{};
+  std::string packed(compressBound(bytes.size()) + 64 * planes, '\0');
+  if (deflateInit(&stream, deflate_level) != Z_OK) throw std::bad_alloc();
+  stream.next_out = reinterpret_cast<Bytef*>(packed.data());
+  stream.avail_out = static_cast<uInt>(packed.size());
+  for (std::size_t i = 0; i < planes; ++i) {
+    const std::string_view plane = bytes.substr(i * length, length);
+    deflateParams(&stream, is_worth_packing(plane) ? deflate_level : Z_NO_COMPRESSION,
+                  Z_DEFAULT_STRATEGY);
+    stream.next_in = reinterpret_cast<Bytef*>(const_cast<char*>(plane.data()));
+    stream.avail_in = static_cast<uInt>(plane.size());
+    deflate(&stream, i + 1 == planes ? Z_FINISH : Z_BLOCK);
+  }
+  packed.resize(stream.total_out);
+  deflateEnd(&stream);
+  return packed;
+}
+
+// Unpacks chunk by chunk and gives each to `take(bytes, first value, count)`; false where one is
+// damaged.
+template <class Take>
+bool unpack(const PackedChunks& chunks, const Take& take) {
+  std::vector<std::uint8_t> bytes(chunks.chunk_values * chunks.value_bytes);
+  const std::unique_ptr<libdeflate_decompressor, decltype(&libdeflate_free_decompressor)> inflater(
+      libdeflate_alloc_decompressor(), libdeflate_free_decompressor);
+  for (const PackedChunk& chunk : chunks.chunks) {
+    std::size_t unpacked = 0;
+    if (libdeflate_zlib_decompress(inflater.get(), chunk.packed.data(), chunk.packed.size(),
+                                   bytes.data(), bytes.size(), &unpacked) != LIBDEFLATE_SUCCESS ||
+        unpacked != bytes.size())
+      return false;
+    take(bytes, chunk.first, std::min(chunks.chunk_values, chunks.values - chunk.first));
+  }
+  return true;
+}
+
 }  // namespace
 
-std::optional<FloatChunks> float_chunks(hid_t data, std::string_view file) {
+std::optional<PackedChunks> packed_chunks(hid_t data, hid_t type, std::string_view file) {
   const Hdf5Handle space(H5Dget_space(data), H5Sclose);
   if (!space || H5Sget_simple_extent_ndims(space.id()) != 1) return std::nullopt;
-  FloatChunks chunks;
+  PackedChunks chunks;
   chunks.values = static_cast<std::size_t>(H5Sget_simple_extent_npoints(space.id()));
-  chunks.chunk_values = chunk_length(data);
+  chunks.chunk_values = chunk_length(data, type);
+  chunks.value_bytes = H5Tget_size(type);
   hsize_t count = 0;
   if (chunks.chunk_values == 0 || H5Dget_num_chunks(data, space.id(), &count) < 0 ||
       count != (chunks.values + chunks.chunk_values - 1) / chunks.chunk_values)
@@ -102,41 +142,29 @@ std::optional<FloatChunks> float_chunks(hid_t data, std::string_view file) {
 }
 
 std::string encode(std::span<const float> values, std::size_t chunk_values) {
-  const std::string planes = shuffle(values, chunk_values);
-  z_stream stream{};
-  std::string packed(compressBound(planes.size()) + 64 * float_bytes, '\0');
-  if (deflateInit(&stream, deflate_level) != Z_OK) throw std::bad_alloc();
-  stream.next_out = reinterpret_cast<Bytef*>(packed.data());
-  stream.avail_out = static_cast<uInt>(packed.size());
-  for (std::size_t byte = 0; byte < float_bytes; ++byte) {
-    const std::string_view plane =
-        std::string_view(planes).substr(byte * chunk_values, chunk_values);
-    deflateParams(&stream, is_worth_packing(plane) ? deflate_level : Z_NO_COMPRESSION,
-                  Z_DEFAULT_STRATEGY);
-    stream.next_in = reinterpret_cast<Bytef*>(const_cast<char*>(plane.data()));
-    stream.avail_in = static_cast<uInt>(plane.size());
-    deflate(&stream, byte + 1 == float_bytes ? Z_FINISH : Z_BLOCK);
-  }
-  packed.resize(stream.total_out);
-  deflateEnd(&stream);
-  return packed;
+  return pack(shuffle(values, chunk_values), float_bytes);
 }
 
-bool decode(const FloatChunks& chunks, double scale, std::vector<double>& values) {
+std::string encode(std::span<const std::uint8_t> values, std::size_t chunk_values) {
+  std::string padded(chunk_values, '\0');
+  std::copy(values.begin(), values.end(), padded.begin());
+  return pack(padded, 1);
+}
+
+bool decode(const PackedChunks& chunks, double scale, std::vector<double>& values) {
   values.resize(chunks.values);
-  std::vector<std::uint8_t> planes(chunks.chunk_values * float_bytes);
-  const std::unique_ptr<libdeflate_decompressor, decltype(&libdeflate_free_decompressor)> inflater(
-      libdeflate_alloc_decompressor(), libdeflate_free_decompressor);
-  for (const FloatChunk& chunk : chunks.chunks) {
-    std::size_t unpacked = 0;
-    if (libdeflate_zlib_decompress(inflater.get(), chunk.packed.data(), chunk.packed.size(),
-                                   planes.data(), planes.size(), &unpacked) != LIBDEFLATE_SUCCESS ||
-        unpacked != planes.size())
-      return false;
-    unshuffle(planes.data(), chunks.chunk_values, scale, values.data() + chunk.first,
-              std::min(chunks.chunk_values, chunks.values - chunk.first));
-  }
-  return true;
+  return unpack(chunks, [&](const std::vector<std::uint8_t>& planes, std::size_t first,
+                            std::size_t count) {
+    unshuffle(planes.data(), chunks.chunk_values, scale, values.data() + first, count);
+  });
+}
+
+bool decode(const PackedChunks& chunks, std::vector<std::uint8_t>& values) {
+  values.resize(chunks.values);
+  return unpack(chunks, [&](const std::vector<std::uint8_t>& bytes, std::size_t first,
+                            std::size_t count) {
+    std::copy_n(bytes.data(), count, values.data() + first);
+  });
 }
 
 }  // namespace clickwise::io
