@@ -153,7 +153,8 @@ void write_events(io::Hdf5Writer& file, const Run& run, const Events& events) {
   air("/events/airtimes/end_s", &run::Airtime::end_s);
 }
 
-void write_into(io::Hdf5Writer& file, const Run& run, const Events& events) {
+std::string bytes_of(const Run& run, const Events& events) {
+  io::Hdf5Writer file;
   write_head(file, run);
   write_log(file, run);
   write_time(file, run);
@@ -169,16 +170,13 @@ void write_into(io::Hdf5Writer& file, const Run& run, const Events& events) {
   end("/rear", run.rear);
   file.axis("/time", on_time);
   write_events(file, run, events);
-  file.finish();
+  return file.finish();
 }
 
 }  // namespace
 
 void write_archive(const std::string& path, const Run& run, const Events& events) {
-  io::write_atomically(path, [&](const std::string& draft) {
-    io::Hdf5Writer file(draft, path);
-    write_into(file, run, events);
-  });
+  io::write_atomically(path, bytes_of(run, events));
 }
 
 }  // namespace clickwise::archive

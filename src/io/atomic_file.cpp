@@ -44,8 +44,6 @@ public:
     }
   }
 
-  const std::string& name() const { return name_; }
-
   void place() {
     ::fchmod(descriptor_, target_mode());
     if (::fsync(descriptor_) != 0) refuse(target_, std::strerror(errno));
@@ -77,28 +75,18 @@ void sync_folder(const std::filesystem::path& folder) {
   ::close(descriptor);
 }
 
-template <class Fill>
-void write_draft(const std::string& path, const Fill& fill) {
+}  // namespace
+
+void write_atomically(const std::string& path, std::string_view contents) {
   std::filesystem::path folder = std::filesystem::path(path).parent_path();
   if (folder.empty()) folder = ".";
   std::error_code error;
   std::filesystem::create_directories(folder, error);
   if (error) refuse(path, error.message());
   Draft draft(path);
-  fill(draft);
+  draft.write(contents);
   draft.place();
   sync_folder(folder);
-}
-
-}  // namespace
-
-void write_atomically(const std::string& path, std::string_view contents) {
-  write_draft(path, [&](Draft& draft) { draft.write(contents); });
-}
-
-void write_atomically(const std::string& path,
-                      const std::function<void(const std::string& draft)>& fill) {
-  write_draft(path, [&](Draft& draft) { fill(draft.name()); });
 }
 
 }  // namespace clickwise::io

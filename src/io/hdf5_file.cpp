@@ -8,6 +8,7 @@
 #include "clickwise/io/mapped_file.hpp"
 #include "clickwise/core/parallel.hpp"
 #include "packed_chunks.hpp"
+#include "text_checksum.hpp"
 #include "hdf5_handle.hpp"
 
 namespace clickwise::io {
@@ -298,6 +299,8 @@ std::string Hdf5File::text(const std::string& name) const {
   if (texts.size() != 1)
     open_->refuse(fmt::format("{} holds {} texts in place of one", name, texts.size()),
                   "the file is no archive of this program");
+  const auto checksum = number_attribute(name, text_checksum_name);
+  if (checksum && *checksum != text_checksum(texts.front())) open_->refuse_damaged(name);
   return texts.front();
 }
 

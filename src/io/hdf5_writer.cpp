@@ -3,10 +3,12 @@
 #include <hdf5_hl.h>
 
 #include <algorithm>
+#include <cstdlib>
 #include <cstring>
+#include <stdexcept>
 
-#include "clickwise/core/errors.hpp"
 #include "packed_chunks.hpp"
+#include "text_checksum.hpp"
 #include "hdf5_handle.hpp"
 
 namespace clickwise::io {
@@ -14,7 +16,44 @@ namespace clickwise::io {
 namespace {
 
 constexpr std::size_t chunk_values = std::size_t{1} << 16U;
+constexpr std::size_t growth_bytes = std::size_t{4} << 20U;
 constexpr unsigned deflate_level = 6;
+
+void need(bool done, const char* what) {
+  if (!done) throw std::runtime_error(std::string("the HDF5 library failed to ") + what);
+}
+
+// Catches the bytes of a file in memory when the library closes it: its own images of open files
+// carry a superblock whose checksum does not match (1.10.8), and a library that fails to write to a
+// full disk crashes when the program ends.
+struct Image {
+  std::string bytes;
+  std::size_t size = 0;
+
+  H5FD_file_image_callbacks_t callbacks() {
+    return {[](std::size_t wanted, H5FD_file_image_op_t, void* image) {
+              static_cast<Image*>(image)->size = wanted;
+              return std::malloc(wanted);
+            },
+            [](void* to, const void* from, std::size_t count, H5FD_file_image_op_t, void*) {
+              return std::memcpy(to, from, count);
+            },
+            [](void* old, std::size_t wanted, H5FD_file_image_op_t, void* image) {
+              static_cast<Image*>(image)->size = wanted;
+              return std::realloc(old, wanted);
+            },
+            [](void* data, H5FD_file_image_op_t when, void* image) {
+              Image& caught = *static_cast<Image*>(image);
+              if (when == H5FD_FILE_IMAGE_OP_FILE_CLOSE)
+                caught.bytes.assign(static_cast<const char*>(data), caught.size);
+              std::free(data);
+              return herr_t{0};
+            },
+            [](void* image) { return image; },
+            [](void*) { return herr_t{0}; },
+            this};
+  }
+};
 
 Hdf5Handle text_type(std::size_t size) {
   Hdf5Handle type(H5Tcopy(H5T_C_S1), H5Tclose);
@@ -41,14 +80,8 @@ Hdf5Handle creation(std::size_t count, bool checksum = true) {
 }  // namespace
 
 struct Hdf5Writer::Open {
-  std::string path;
+  Image image;
   Hdf5Handle file;
-
-  void need(bool done, const char* what) const {
-    if (!done)
-      throw core::JobError({path}, std::string("cannot be written (the HDF5 library failed to ") + what + ")",
-                           "check the folder, its permissions and the room on the disk");
-  }
 
   void attribute(const std::string& name, const char* attribute, hid_t type, const void* value) {
     const Hdf5Handle space(H5Screate(H5S_SCALAR), H5Sclose);
@@ -109,16 +142,17 @@ struct Hdf5Writer::Open {
   }
 };
 
-Hdf5Writer::Hdf5Writer(const std::string& path, const std::string& named)
-    : open_(std::make_unique<Open>()) {
+Hdf5Writer::Hdf5Writer() : open_(std::make_unique<Open>()) {
   const Hdf5Lock lock;
-  open_->path = named;
   const Hdf5Handle access(H5Pcreate(H5P_FILE_ACCESS), H5Pclose);
-  // 1.8 is the first format whose headers carry checksums. Not every file system can lock.
-  H5Pset_libver_bounds(access.id(), H5F_LIBVER_V18, H5F_LIBVER_V18);
-  H5Pset_file_locking(access.id(), false, true);
-  open_->file = {H5Fcreate(path.c_str(), H5F_ACC_TRUNC, H5P_DEFAULT, access.id()), H5Fclose};
-  open_->need(static_cast<bool>(open_->file), "make the file");
+  H5FD_file_image_callbacks_t callbacks = open_->image.callbacks();
+  // 1.8 is the first format whose headers carry checksums.
+  need(H5Pset_fapl_core(access.id(), growth_bytes, false) >= 0 &&
+           H5Pset_file_image_callbacks(access.id(), &callbacks) >= 0 &&
+           H5Pset_libver_bounds(access.id(), H5F_LIBVER_V18, H5F_LIBVER_V18) >= 0,
+       "set up a file in memory");
+  open_->file = {H5Fcreate("clickwise", H5F_ACC_TRUNC, H5P_DEFAULT, access.id()), H5Fclose};
+  need(static_cast<bool>(open_->file), "make a file in memory");
 }
 
 Hdf5Writer::~Hdf5Writer() {
@@ -130,7 +164,7 @@ void Hdf5Writer::group(const std::string& name) {
   const Hdf5Lock lock;
   const Hdf5Handle made(
       H5Gcreate2(open_->file.id(), name.c_str(), H5P_DEFAULT, H5P_DEFAULT, H5P_DEFAULT), H5Gclose);
-  open_->need(static_cast<bool>(made), "make a group");
+  need(static_cast<bool>(made), "make a group");
 }
 
 void Hdf5Writer::data(const std::string& name, std::span<const double> values,
@@ -160,6 +194,7 @@ void Hdf5Writer::text(const std::string& name, std::string_view text, std::strin
   const Hdf5Handle space(H5Screate(H5S_SCALAR), H5Sclose);
   open_->write(name, type.id(), type.id(), space.id(), creation(0).id(), padded.data());
   open_->attribute(name, "units", units);
+  attribute(name, text_checksum_name, text_checksum(text));
 }
 
 void Hdf5Writer::texts(const std::string& name, const std::vector<std::string>& texts,
@@ -188,17 +223,22 @@ void Hdf5Writer::axis(const std::string& name, const std::vector<std::string>& o
   const Hdf5Lock lock;
   const Hdf5Handle scale(H5Dopen2(open_->file.id(), name.c_str(), H5P_DEFAULT), H5Dclose);
   const std::string label = name.substr(name.rfind('/') + 1);
-  open_->need(scale && H5DSset_scale(scale.id(), label.c_str()) >= 0, "make an axis");
+  need(scale && H5DSset_scale(scale.id(), label.c_str()) >= 0, "make an axis");
   for (const std::string& data : of) {
     const Hdf5Handle set(H5Dopen2(open_->file.id(), data.c_str(), H5P_DEFAULT), H5Dclose);
-    open_->need(set && H5DSattach_scale(set.id(), scale.id(), 0) >= 0, "attach an axis");
+    need(set && H5DSattach_scale(set.id(), scale.id(), 0) >= 0, "attach an axis");
   }
 }
 
-void Hdf5Writer::finish() {
+std::string Hdf5Writer::finish() {
   const Hdf5Lock lock;
-  open_->need(H5Fflush(open_->file.id(), H5F_SCOPE_GLOBAL) >= 0 && open_->file.close(),
-              "end the file");
+  need(H5Fflush(open_->file.id(), H5F_SCOPE_GLOBAL) >= 0, "flush");
+  const ssize_t size = H5Fget_file_image(open_->file.id(), nullptr, 0);
+  need(size > 0 && open_->file.close(), "end the file");
+  std::string bytes = std::move(open_->image.bytes);
+  need(bytes.size() >= static_cast<std::size_t>(size), "give all its bytes");
+  bytes.resize(static_cast<std::size_t>(size));
+  return bytes;
 }
 
 }  // namespace clickwise::io

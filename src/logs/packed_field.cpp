@@ -60,11 +60,12 @@ double overflow_of(FieldType type) {
   return type == FieldType::u32 ? 0x1p32 : 0.0;
 }
 
-std::vector<double> steps_of(const std::vector<double>& values, double overflow) {
+std::vector<double> differences(const std::vector<double>& values, double overflow) {
   std::vector<double> steps;
   for (std::size_t i = 1; i < values.size(); ++i) {
     const double step = values[i] - values[i - 1];
-    steps.push_back(step < 0.0 ? step + overflow : step);
+    const double undone = step + overflow;
+    steps.push_back(step < 0.0 && undone < overflow / 64.0 ? undone : step);
   }
   return steps;
 }
@@ -80,21 +81,21 @@ std::vector<double> field_values(std::string_view file, const FieldPlace& place,
   return values;
 }
 
-double even_share(std::string_view file, const FieldPlace& place, std::size_t most) {
+Steps steps_of(std::string_view file, const FieldPlace& place, std::size_t most) {
   constexpr double widest = 3.0;
   std::vector<double> steps =
-      steps_of(field_values(file, place, most), overflow_of(place.type));
+      differences(field_values(file, place, most), overflow_of(place.type));
   std::erase_if(steps, [](double step) { return std::isnan(step); });
-  if (steps.size() < 2) return 0.0;
+  if (steps.size() < 2) return {};
   std::vector<double> sorted = steps;
   const auto middle = sorted.begin() + static_cast<std::ptrdiff_t>(sorted.size() / 2);
   std::nth_element(sorted.begin(), middle, sorted.end());
   const double usual = *middle;
-  if (!(usual > 0.0)) return 0.0;
+  if (!(usual > 0.0)) return {};
   const auto even = std::count_if(steps.begin(), steps.end(), [&](double step) {
     return step > usual / widest && step < usual * widest;
   });
-  return static_cast<double>(even) / static_cast<double>(steps.size());
+  return {usual, static_cast<double>(even) / static_cast<double>(steps.size())};
 }
 
 }  // namespace clickwise::logs

@@ -19,8 +19,12 @@ struct FieldPlace {
 // Frames whose field lies wholly in the file, at most `most`.
 std::vector<double> field_values(std::string_view file, const FieldPlace& place, std::size_t most);
 
-// Share of the steps from value to value that are positive and within a factor of 3 of the usual
-// one; overflows of an unsigned counter are undone. 0 for fewer than 3 values.
-double even_share(std::string_view file, const FieldPlace& place, std::size_t most);
+struct Steps {
+  double usual = 0.0;       // median of the steps from value to value
+  double even_share = 0.0;  // of them, those within a factor of 3 of it; 0: it is not positive
+};
+
+// Overflows of an unsigned counter, by steps of less than 1/64 of it, are undone.
+Steps steps_of(std::string_view file, const FieldPlace& place, std::size_t most);
 
 }  // namespace clickwise::logs

@@ -16,6 +16,8 @@ constexpr std::size_t frames_looked_at = 2000;
 constexpr double sure_share = 0.9;    // of even steps: this is the frame
 constexpr double usable_share = 0.5;  // below it this is not
 constexpr std::size_t longest_guess = 256;
+constexpr double shortest_step_s = 2e-5;  // what a log of suspension has
+constexpr double longest_step_s = 0.1;
 
 using bike::PackedFrames;
 
@@ -36,9 +38,11 @@ std::vector<std::size_t> offsets_of(const PackedFrames& packed) {
 // The frame under which the time runs evenly, if only its length, its header or its byte order is
 // told wrongly.
 std::string better_frame(std::string_view file, const FieldPlace& told,
-                         const PackedFrames& packed) {
+                         const PackedFrames& packed, double seconds_per_unit) {
   const auto fits = [&](const FieldPlace& place) {
-    return even_share(file, place, frames_looked_at) >= sure_share;
+    const Steps steps = steps_of(file, place, frames_looked_at);
+    const double step_s = steps.usual * seconds_per_unit;
+    return steps.even_share >= sure_share && step_s > shortest_step_s && step_s < longest_step_s;
   };
   FieldPlace swapped = told;
   swapped.big_endian = !told.big_endian;
@@ -62,10 +66,10 @@ std::string better_frame(std::string_view file, const FieldPlace& told,
 }
 
 void check_time(std::string_view file, const FieldPlace& place, const PackedFrames& packed,
-                const std::string& name, const std::string& path) {
-  const double share = even_share(file, place, frames_looked_at);
+                double seconds_per_unit, const std::string& name, const std::string& path) {
+  const double share = steps_of(file, place, frames_looked_at).even_share;
   if (share >= usable_share) return;
-  const std::string better = better_frame(file, place, packed);
+  const std::string better = better_frame(file, place, packed, seconds_per_unit);
   throw core::InputError(
       {path},
       fmt::format("by the frame in the bike file ({} bytes, {}-endian, behind {} bytes of header) "
@@ -104,7 +108,8 @@ ChannelTable packed_table(const std::string& path, const PackedFrames& packed,
   if (time) {
     const std::size_t index = find_channel(table, time->column);
     if (table.rows >= 3)
-      check_time(file->text(), places[index], packed, table.names[index], path);
+      check_time(file->text(), places[index], packed, time->seconds_per_unit, table.names[index],
+                 path);
   } else if (rest > 0) {
     table.notes.push_back(fmt::format(
         "the file ends with {} of the {} bytes of a frame; without a time field nothing proves the "

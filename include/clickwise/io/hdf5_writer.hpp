@@ -1,4 +1,4 @@
-// Writing an HDF5 file; io/atomic_file.hpp puts it in its place whole.
+// Writing an HDF5 file in memory, to be put in its place whole (io/atomic_file.hpp).
 #pragma once
 
 #include <cstdint>
@@ -12,12 +12,11 @@ namespace clickwise::io {
 
 // Names are paths from the root; the groups in front must be there. Data sets are cut into chunks,
 // their bytes sorted by place (shuffle), deflated and given a checksum (of floats it is zlib's); lists without entries and
-// single texts are stored plain. Every data set gets its `units`. Readable by HDF5 1.8 (2008) and
-// later. Throws core::JobError where the disk does not take it.
+// single texts are stored plain, the latter with their CRC-32 beside `units`. Every data set gets its `units`. Readable by HDF5 1.8 (2008) and
+// later. A failure of the library is a std::runtime_error: nothing that a user gives causes one.
 class Hdf5Writer {
 public:
-  // Overwrites the file at `path`; `named` is its name in messages.
-  Hdf5Writer(const std::string& path, const std::string& named);
+  Hdf5Writer();
   ~Hdf5Writer();
   Hdf5Writer(const Hdf5Writer&) = delete;
   Hdf5Writer& operator=(const Hdf5Writer&) = delete;
@@ -37,8 +36,8 @@ public:
   // Makes a data set the axis of others (a dimension scale of the HDF5 specification).
   void axis(const std::string& name, const std::vector<std::string>& of);
 
-  // Writes what is left and closes the file; the writer takes nothing more.
-  void finish();
+  // The bytes of the whole file; the writer takes nothing more.
+  std::string finish();
 
 private:
   struct Open;
