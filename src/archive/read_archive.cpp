@@ -57,8 +57,7 @@ public:
   }
 
   void check_length(const std::string& name, std::size_t has, std::size_t samples) const {
-    if (has != samples)
-      refuse(fmt::format("{} holds {} of {} samples", name, has, samples));
+    if (has != samples) refuse(fmt::format("{} holds {} of {} samples", name, has, samples));
   }
 
   const io::Hdf5File& file() const { return file_; }
@@ -118,7 +117,8 @@ void read_time(const Reader& reader, Run& run) {
     reader.refuse("/time is no axis of two samples or more");
   run.time = {reader.number_attribute("/time", "start_s"),
               reader.positive_attribute("/time", "rate_hz"), time->shape[0]};
-  if (!std::isfinite(run.time.start_s)) reader.refuse("the attribute start_s of /time is no number");
+  if (!std::isfinite(run.time.start_s))
+    reader.refuse("the attribute start_s of /time is no number");
   run.riding = reader.mask("/riding", run.time.samples);
 }
 
@@ -157,6 +157,7 @@ void read_series(const Reader& reader, Run& run) {
     want(group + "/travel_mm", core::metres_per_mm, end->motion.travel_m);
     want(group + "/velocity_mm_s", core::metres_per_mm, end->motion.velocity_m_s);
     want(group + "/velocity_sigma_mm_s", core::metres_per_mm, end->motion.velocity_sigma_m_s);
+    if (reader.file().has(group + "/felt_m_s2")) want(group + "/felt_m_s2", 1.0, end->felt_m_s2);
   };
   want_end("/front", run.front);
   want_end("/rear", run.rear);
@@ -187,7 +188,8 @@ Run read_archive(const std::string& path) {
         {path},
         fmt::format("this archive is of another version (schema \"{}\", written by {}); this "
                     "program reads \"{}\"",
-                    found, reader.file().text_attribute("/", "program").value_or("an unknown program"),
+                    found,
+                    reader.file().text_attribute("/", "program").value_or("an unknown program"),
                     schema),
         "use the program that wrote it, or import the log again with this one");
   }

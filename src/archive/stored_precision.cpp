@@ -14,7 +14,8 @@ void round_all(std::vector<double>& metres) {
   for (double& value : metres) value = stored(value);
 }
 
-// GCC 12.2 at -O3 makes one vector of two such neighbours and loses the rounding: this stays a call.
+// GCC 12.2 at -O3 makes one vector of two such neighbours and loses the rounding: this stays a
+// call.
 [[gnu::noinline]] double stored_scalar(double metres) {
   return stored(metres);
 }
@@ -29,8 +30,8 @@ void round_to_stored(run::Motion& motion) {
   motion.reading_noise_m = stored_scalar(motion.reading_noise_m);
 }
 
-void round_to_stored(std::vector<double>& speed_m_s) {
-  for (double& value : speed_m_s) value = static_cast<double>(static_cast<float>(value));
+void round_to_stored(std::vector<double>& values) {
+  for (double& value : values) value = static_cast<double>(static_cast<float>(value));
 }
 
 }  // namespace clickwise::archive

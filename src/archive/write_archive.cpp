@@ -22,6 +22,10 @@ std::vector<float> all_stored_mm(const std::vector<double>& metres) {
   return stored;
 }
 
+std::vector<float> as_floats(const std::vector<double>& values) {
+  return {values.begin(), values.end()};
+}
+
 // One column of a list of things.
 template <class Thing, class Get>
 std::vector<double> column(const std::vector<Thing>& things, const Get& get) {
@@ -79,9 +83,7 @@ void write_time(io::Hdf5Writer& file, const Run& run) {
   file.attribute("/time", "rate_hz", run.time.rate_hz);
   file.data("/riding", std::span<const std::uint8_t>(run.riding), no_unit);
   if (!run.speed_m_s.empty())
-    file.data("/speed_m_s",
-              std::span<const float>(std::vector<float>(run.speed_m_s.begin(), run.speed_m_s.end())),
-              "m/s");
+    file.data("/speed_m_s", std::span<const float>(as_floats(run.speed_m_s)), "m/s");
 }
 
 void write_end(io::Hdf5Writer& file, const std::string& group, const EndOfRun& end) {
@@ -94,6 +96,8 @@ void write_end(io::Hdf5Writer& file, const std::string& group, const EndOfRun& e
   series("/travel_mm", motion.travel_m, "mm");
   series("/velocity_mm_s", motion.velocity_m_s, "mm/s");
   series("/velocity_sigma_mm_s", motion.velocity_sigma_m_s, "mm/s");
+  if (!end.felt_m_s2.empty())
+    file.data(group + "/felt_m_s2", std::span<const float>(as_floats(end.felt_m_s2)), "m/s2");
   file.data(group + "/valid", std::span<const std::uint8_t>(motion.valid), no_unit);
   file.attribute(group, "stroke_mm", to_mm(end.stroke_m));
   file.attribute(group, "measured_by", source_word(motion.source));
@@ -114,8 +118,7 @@ void write_stops(io::Hdf5Writer& file, const std::string& group,
   add("/closing_speed_mm_s", "mm/s",
       [](const run::EndStop& stop) { return to_mm(stop.closing_speed_m_s); });
   add("/energy_left_j", "J", [](const run::EndStop& stop) {
-    return stop.energy_left_j > 0.0 ? stop.energy_left_j
-                                    : std::numeric_limits<double>::quiet_NaN();
+    return stop.energy_left_j > 0.0 ? stop.energy_left_j : std::numeric_limits<double>::quiet_NaN();
   });
 }
 
@@ -128,7 +131,8 @@ void write_trains(io::Hdf5Writer& file, const std::string& group,
   add("/begin_s", "s", [](const run::HitTrain& train) { return train.begin_s; });
   add("/end_s", "s", [](const run::HitTrain& train) { return train.end_s; });
   add("/hits", no_unit, [](const run::HitTrain& train) { return train.hits; });
-  add("/first_start_mm", "mm", [](const run::HitTrain& train) { return to_mm(train.first_start_m); });
+  add("/first_start_mm", "mm",
+      [](const run::HitTrain& train) { return to_mm(train.first_start_m); });
   add("/climb_mm_per_hit", "mm",
       [](const run::HitTrain& train) { return to_mm(train.climb_m_per_hit); });
 }
@@ -165,6 +169,7 @@ std::string bytes_of(const Run& run, const Events& events) {
     write_end(file, group, *one);
     for (const char* name : {"/travel_mm", "/velocity_mm_s", "/velocity_sigma_mm_s", "/valid"})
       on_time.push_back(group + name);
+    if (!one->felt_m_s2.empty()) on_time.push_back(group + "/felt_m_s2");
   };
   end("/front", run.front);
   end("/rear", run.rear);

@@ -33,8 +33,8 @@ Potentiometer read_sensor(const io::TomlTable& end);
 Spring read_spring(const io::TomlTable& spring, double stroke_m);
 Damper read_damper(const io::TomlTable& damper, const FilesBeside& beside);
 
-// Reads the dyno table in damper.text, that of the file at `path`, and counts the adjusters that the
-// bike file does not count by the table's columns. The file must be CSV with the columns
+// Reads the dyno table in damper.text, that of the file at `path`, and counts the adjusters that
+// the bike file does not count by the table's columns. The file must be CSV with the columns
 // velocity_mm_s and force_n and one for each adjuster that was turned; blank lines and lines that
 // begin with '#' are skipped. Rows at rest are left out, with a note. Throws core::InputError with
 // the table's line for the first thing wrong.

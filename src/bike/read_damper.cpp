@@ -1,8 +1,8 @@
 #include <filesystem>
 
 #include "bike_readers.hpp"
-#include "clickwise/io/mapped_file.hpp"
 #include "clickwise/core/units.hpp"
+#include "clickwise/io/mapped_file.hpp"
 
 namespace clickwise::bike {
 

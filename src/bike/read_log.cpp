@@ -12,8 +12,7 @@ constexpr std::array<std::string_view, 10> type_names{"u8",  "i8",  "u16", "i16"
                                                       "i32", "u64", "i64", "f32", "f64"};
 constexpr std::size_t most_frame_bytes = 4096;
 constexpr long long most_header_bytes = 1LL << 30U;
-constexpr const char* frame_example =
-    "frame = [[\"t_us\", \"u32\"], [\"fork_adc\", \"u16\"]]";
+constexpr const char* frame_example = "frame = [[\"t_us\", \"u32\"], [\"fork_adc\", \"u16\"]]";
 
 PackedField read_field(const io::TomlValue& value) {
   const std::string example = std::string("write the frame as ") + frame_example;

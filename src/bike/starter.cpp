@@ -137,9 +137,9 @@ std::string unit_of(const StarterFacts& facts, std::size_t n) {
 }
 
 std::string unit_line(const StarterFacts& facts, bool accelerometer) {
-  const auto found =
-      std::find_if(facts.imus.begin(), facts.imus.end(),
-                   [&](const StarterImu& imu) { return imu.accelerometer == accelerometer; });
+  const auto found = std::find_if(facts.imus.begin(), facts.imus.end(), [&](const StarterImu& imu) {
+    return imu.accelerometer == accelerometer;
+  });
   if (found == facts.imus.end()) return "";
   if (!accelerometer)
     return fmt::format("# gyro_unit = {}   # by its size; check it\n", quoted(found->unit));

@@ -8,8 +8,8 @@ namespace clickwise::cli {
 
 void add_import(CLI::App& app, Common& common) {
   auto options = std::make_shared<workflow::ImportOptions>();
-  CLI::App* command = add_command(app, common, "import",
-                                  "The cleaned run as an archive that every command takes for a log");
+  CLI::App* command = add_command(
+      app, common, "import", "The cleaned run as an archive that every command takes for a log");
   add_ride(*command, options->ride);
   command->add_option("-o,--output", options->archive_path, "the archive to write")
       ->required()

@@ -5,11 +5,11 @@
 #include <algorithm>
 
 #include "clickwise/core/errors.hpp"
-#include "clickwise/io/mapped_file.hpp"
 #include "clickwise/core/parallel.hpp"
+#include "clickwise/io/mapped_file.hpp"
+#include "hdf5_handle.hpp"
 #include "packed_chunks.hpp"
 #include "text_checksum.hpp"
-#include "hdf5_handle.hpp"
 
 namespace clickwise::io {
 
@@ -61,7 +61,8 @@ std::string unpadded(const char* begin, std::size_t size, H5T_str_t padding) {
 // Reads texts through `read(memory type, buffer)`, of a fixed length or of their own.
 template <class Read>
 std::optional<std::vector<std::string>> read_texts(hid_t type, hid_t space, const Read& read) {
-  const auto count = static_cast<std::size_t>(std::max<hssize_t>(H5Sget_simple_extent_npoints(space), 0));
+  const auto count =
+      static_cast<std::size_t>(std::max<hssize_t>(H5Sget_simple_extent_npoints(space), 0));
   const Hdf5Handle memory(H5Tcopy(type), H5Tclose);
   std::vector<std::string> texts(count);
   if (count == 0) return texts;
@@ -138,7 +139,8 @@ struct Hdf5File::Open {
     if (!set.data) {
       const Hdf5Handle group(H5Gopen2(file.id(), name.c_str(), H5P_DEFAULT), H5Gclose);
       if (group)
-        refuse(name + " is a group, not a data set", "name a data set; clickwise inspect lists them");
+        refuse(name + " is a group, not a data set",
+               "name a data set; clickwise inspect lists them");
       refuse_damaged(name);
     }
     set.type = {H5Dget_type(set.data.id()), H5Tclose};
@@ -221,7 +223,8 @@ bool is_hdf5(std::string_view bytes) {
 
 Hdf5File::Hdf5File(const std::string& path) : path_(path), open_(std::make_unique<Open>(path)) {
   if (!is_hdf5(open_->mapped.text()))
-    open_->refuse("this is no HDF5 file", "give the file that the logger or clickwise import wrote");
+    open_->refuse("this is no HDF5 file",
+                  "give the file that the logger or clickwise import wrote");
   const Hdf5Lock lock;
   const Hdf5Handle access(H5Pcreate(H5P_FILE_ACCESS), H5Pclose);
   H5Pset_file_locking(access.id(), false, true);  // read-only media cannot be locked
@@ -265,8 +268,8 @@ std::vector<std::vector<double>> Hdf5File::numbers(const std::vector<Hdf5Scaled>
   std::vector<std::optional<PackedChunks>> chunks;
   for (const Hdf5Scaled& one : wanted) {
     const Hdf5Lock lock;
-    chunks.push_back(packed_chunks(open_->data_set(one.name).data.id(), H5T_IEEE_F32LE,
-                                   open_->mapped.text()));
+    chunks.push_back(
+        packed_chunks(open_->data_set(one.name).data.id(), H5T_IEEE_F32LE, open_->mapped.text()));
   }
   std::vector<std::vector<double>> values(wanted.size());
   core::parallel_for(wanted.size(), [&](std::size_t i) {

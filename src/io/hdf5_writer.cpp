@@ -7,9 +7,9 @@
 #include <cstring>
 #include <stdexcept>
 
+#include "hdf5_handle.hpp"
 #include "packed_chunks.hpp"
 #include "text_checksum.hpp"
-#include "hdf5_handle.hpp"
 
 namespace clickwise::io {
 
@@ -85,10 +85,9 @@ struct Hdf5Writer::Open {
 
   void attribute(const std::string& name, const char* attribute, hid_t type, const void* value) {
     const Hdf5Handle space(H5Screate(H5S_SCALAR), H5Sclose);
-    const Hdf5Handle made(
-        H5Acreate_by_name(file.id(), name.c_str(), attribute, type, space.id(), H5P_DEFAULT,
-                          H5P_DEFAULT, H5P_DEFAULT),
-        H5Aclose);
+    const Hdf5Handle made(H5Acreate_by_name(file.id(), name.c_str(), attribute, type, space.id(),
+                                            H5P_DEFAULT, H5P_DEFAULT, H5P_DEFAULT),
+                          H5Aclose);
     need(made && H5Awrite(made.id(), type, value) >= 0, "write an attribute");
   }
 

@@ -36,9 +36,9 @@ std::size_t chunk_length(hid_t data, hid_t wanted) {
   const Hdf5Handle list(H5Dget_create_plist(data), H5Pclose);
   const Hdf5Handle type(H5Dget_type(data), H5Tclose);
   hsize_t length = 0;
-  if (!list || H5Pget_layout(list.id()) != H5D_CHUNKED ||
-      H5Tequal(type.id(), wanted) <= 0 || !filters_are_ours(list.id()) ||
-      H5Pget_chunk(list.id(), 1, &length) != 1 || length > largest_chunk_values)
+  if (!list || H5Pget_layout(list.id()) != H5D_CHUNKED || H5Tequal(type.id(), wanted) <= 0 ||
+      !filters_are_ours(list.id()) || H5Pget_chunk(list.id(), 1, &length) != 1 ||
+      length > largest_chunk_values)
     return 0;
   return static_cast<std::size_t>(length);
 }
@@ -153,18 +153,18 @@ std::string encode(std::span<const std::uint8_t> values, std::size_t chunk_value
 
 bool decode(const PackedChunks& chunks, double scale, std::vector<double>& values) {
   values.resize(chunks.values);
-  return unpack(chunks, [&](const std::vector<std::uint8_t>& planes, std::size_t first,
-                            std::size_t count) {
-    unshuffle(planes.data(), chunks.chunk_values, scale, values.data() + first, count);
-  });
+  return unpack(
+      chunks, [&](const std::vector<std::uint8_t>& planes, std::size_t first, std::size_t count) {
+        unshuffle(planes.data(), chunks.chunk_values, scale, values.data() + first, count);
+      });
 }
 
 bool decode(const PackedChunks& chunks, std::vector<std::uint8_t>& values) {
   values.resize(chunks.values);
-  return unpack(chunks, [&](const std::vector<std::uint8_t>& bytes, std::size_t first,
-                            std::size_t count) {
-    std::copy_n(bytes.data(), count, values.data() + first);
-  });
+  return unpack(chunks,
+                [&](const std::vector<std::uint8_t>& bytes, std::size_t first, std::size_t count) {
+                  std::copy_n(bytes.data(), count, values.data() + first);
+                });
 }
 
 }  // namespace clickwise::io

@@ -97,11 +97,10 @@ run::Recording recording_of(const ChannelTable& table, const bike::LogFormat& fo
   std::vector<std::vector<double>> values(wanted.size());
   core::parallel_for(wanted.size(), [&](std::size_t k) { values[k] = readings(table, wanted[k]); });
 
-  Clock clock = format.time
-                    ? lay_clock(stamps_of(table, find_channel(table, format.time->column),
-                                          format.time->seconds_per_unit),
-                                table.path)
-                    : uniform_clock(table.rows, *format.rate_hz, {});
+  Clock clock = format.time ? lay_clock(stamps_of(table, find_channel(table, format.time->column),
+                                                  format.time->seconds_per_unit),
+                                        table.path)
+                            : uniform_clock(table.rows, *format.rate_hz, {});
   run::Recording recording;
   recording.name = name_of(table.path);
   recording.notes = table.notes;

@@ -20,7 +20,7 @@ struct ChannelTable {
   std::size_t rows = 0;
   bool truncated = false;
   std::vector<std::string> notes;
-  std::string hdf5_group;                                 // as LogFacts, and
+  std::string hdf5_group;  // as LogFacts, and
   std::vector<std::string> contents;
   std::function<std::vector<double>(std::size_t)> read;  // the values of a channel, `rows` of them
 };

@@ -103,8 +103,7 @@ std::size_t find_column(const TextFormat& format, const bike::ColumnRef& column,
   const auto number = [&](auto name) { return std::to_string(name - format.names.begin() + 1); };
   if (second != format.names.end())
     throw core::InputError(
-        header_place(format, path),
-        "the log has more than one column \"" + column.name + "\"",
+        header_place(format, path), "the log has more than one column \"" + column.name + "\"",
         "give the number instead: column = " + number(first) + " or " + number(second));
   return static_cast<std::size_t>(first - format.names.begin());
 }

@@ -28,7 +28,8 @@ bool is_channel(const io::Hdf5Item& item) {
 std::string shape_words(const std::vector<std::size_t>& shape) {
   if (shape.empty()) return "1 value";
   std::string words;
-  for (const std::size_t length : shape) words += (words.empty() ? "" : " x ") + fmt::format("{}", length);
+  for (const std::size_t length : shape)
+    words += (words.empty() ? "" : " x ") + fmt::format("{}", length);
   return words;
 }
 
@@ -55,9 +56,9 @@ void list(const io::Hdf5File& file, const std::string& group, int depth, Listing
   listing.channels[group] = commonest_length(items).second;
   for (const io::Hdf5Item& item : items)
     if (item.kind != io::Hdf5Kind::group)
-      listing.lines.push_back(core::as_utf8(
-          fmt::format("{:<32} {:<8} {} {}", inside(group, item.name),
-                      item.type.empty() ? "other" : item.type, shape_words(item.shape), item.units)));
+      listing.lines.push_back(core::as_utf8(fmt::format(
+          "{:<32} {:<8} {} {}", inside(group, item.name), item.type.empty() ? "other" : item.type,
+          shape_words(item.shape), item.units)));
   for (const io::Hdf5Item& item : items)
     if (item.kind == io::Hdf5Kind::group) list(file, inside(group, item.name), depth + 1, listing);
 }
@@ -105,9 +106,9 @@ ChannelTable hdf5_table(const std::string& path, const std::string& group,
   table.rows = commonest_length(items).first;
   std::erase_if(items, [](const io::Hdf5Item& item) { return !is_channel(item); });
   if (items.empty())
-    throw core::InputError({path},
-                           "the group " + group + " holds no data sets of one dimension and of numbers",
-                           "correct [log] hdf5 in the bike file; " + groups_with_channels(*file));
+    throw core::InputError(
+        {path}, "the group " + group + " holds no data sets of one dimension and of numbers",
+        "correct [log] hdf5 in the bike file; " + groups_with_channels(*file));
   const auto is_out = [&](const io::Hdf5Item& item) { return item.shape[0] != table.rows; };
   if (leave_out) {
     for (const io::Hdf5Item& item : items)

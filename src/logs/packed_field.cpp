@@ -72,8 +72,7 @@ std::vector<double> differences(const std::vector<double>& values, double overfl
 
 }  // namespace
 
-std::vector<double> field_values(std::string_view file, const FieldPlace& place,
-                                 std::size_t most) {
+std::vector<double> field_values(std::string_view file, const FieldPlace& place, std::size_t most) {
   const std::size_t first_end = place.first_byte + bike::size_of(place.type);
   if (first_end > file.size()) return {};
   std::vector<double> values(std::min(most, (file.size() - first_end) / place.frame_bytes + 1));
@@ -83,8 +82,7 @@ std::vector<double> field_values(std::string_view file, const FieldPlace& place,
 
 Steps steps_of(std::string_view file, const FieldPlace& place, std::size_t most) {
   constexpr double widest = 3.0;
-  std::vector<double> steps =
-      differences(field_values(file, place, most), overflow_of(place.type));
+  std::vector<double> steps = differences(field_values(file, place, most), overflow_of(place.type));
   std::erase_if(steps, [](double step) { return std::isnan(step); });
   if (steps.size() < 2) return {};
   std::vector<double> sorted = steps;

@@ -37,8 +37,8 @@ std::vector<std::size_t> offsets_of(const PackedFrames& packed) {
 
 // The frame under which the time runs evenly, if only its length, its header or its byte order is
 // told wrongly.
-std::string better_frame(std::string_view file, const FieldPlace& told,
-                         const PackedFrames& packed, double seconds_per_unit) {
+std::string better_frame(std::string_view file, const FieldPlace& told, const PackedFrames& packed,
+                         double seconds_per_unit) {
   const auto fits = [&](const FieldPlace& place) {
     const Steps steps = steps_of(file, place, frames_looked_at);
     const double step_s = steps.usual * seconds_per_unit;
@@ -59,8 +59,7 @@ std::string better_frame(std::string_view file, const FieldPlace& told,
   for (std::size_t header = 0; header <= longest_guess; ++header) {
     FieldPlace moved = told;
     moved.first_byte = header + in_frame;
-    if (fits(moved))
-      return fmt::format("with header_bytes = {} it would run evenly", header);
+    if (fits(moved)) return fmt::format("with header_bytes = {} it would run evenly", header);
   }
   return "";
 }

@@ -72,11 +72,10 @@ void add_list(std::string& text, const std::string& heading,
 
 std::string inspect_text(const workflow::Inspection& inspection) {
   const logs::LogFacts& facts = inspection.facts;
-  std::string text = fmt::format("{}: {} rows, {} columns; {}\n{}\n\n", facts.name, facts.rows,
-                                 facts.columns.size(),
-                                 facts.binary_format.empty() ? format_words(facts.format)
-                                                             : facts.binary_format,
-                                 clock_words(facts, !inspection.starter_bike.empty()));
+  std::string text = fmt::format(
+      "{}: {} rows, {} columns; {}\n{}\n\n", facts.name, facts.rows, facts.columns.size(),
+      facts.binary_format.empty() ? format_words(facts.format) : facts.binary_format,
+      clock_words(facts, !inspection.starter_bike.empty()));
   text += fmt::format("  {:>3}  {:<24} {:<10} {:>12} {:>12} {:>10} {:>9}\n", "", "column", "kind",
                       "least", "most", "step", "missing");
   for (const logs::ColumnFacts& column : facts.columns) text += column_line(column) + "\n";

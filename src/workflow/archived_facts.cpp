@@ -27,8 +27,7 @@ logs::ColumnFacts series_facts(const std::string& name, const std::vector<double
   }
   facts.missing = values.size() - facts.count;
   if (facts.count > 0)
-    facts.kind =
-        facts.least == facts.most ? logs::ColumnKind::constant : logs::ColumnKind::number;
+    facts.kind = facts.least == facts.most ? logs::ColumnKind::constant : logs::ColumnKind::number;
   return facts;
 }
 
@@ -50,9 +49,9 @@ logs::LogFacts archived_facts(const std::string& path) {
   const archive::Run run = archive::read_archive(path);
   logs::LogFacts facts;
   facts.name = core::as_utf8(std::filesystem::path(path).filename().string());
-  facts.binary_format = core::as_utf8(fmt::format("archive of {} on {}, written {} by {}",
-                                                  run.log_name, run.bike.name, run.created,
-                                                  run.program));
+  facts.binary_format =
+      core::as_utf8(fmt::format("archive of {} on {}, written {} by {}", run.log_name,
+                                run.bike.name, run.created, run.program));
   facts.rows = run.time.samples;
   facts.rate_hz = run.time.rate_hz;
   facts.duration_s = run.duration_s;

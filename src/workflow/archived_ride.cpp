@@ -54,7 +54,8 @@ void note_differences(const bike::Bike& stored, const Ride& ride, std::vector<st
 
 void note_unused(const archive::Run& run, const Ride& ride, std::vector<std::string>& notes) {
   for (const bike::EndName name : bike::both_ends) {
-    const bool archived = name == bike::EndName::front ? run.front.has_value() : run.rear.has_value();
+    const bool archived =
+        name == bike::EndName::front ? run.front.has_value() : run.rear.has_value();
     if (archived && !ride.bike.end(name))
       notes.push_back(fmt::format("the archive holds a {} end, which the bike file does not have",
                                   bike::to_string(name)));
@@ -66,6 +67,7 @@ void take_ends(archive::Run& run, Ride& ride) {
     auto& stored = end_of(run, name);
     if (!stored || !ride.bike.end(name)) continue;
     RideEnd end{name, std::move(stored->motion)};
+    end.felt_m_s2 = std::move(stored->felt_m_s2);
     end.measured_by = end.motion.source;
     end.motion.source = run::Source::archive;
     ride.ends.push_back(std::move(end));
@@ -98,8 +100,8 @@ Ride ride_of_archive(const RideOptions& options) {
   const bike::Bike stored = stored_bike(run, options.log_path);
   Ride ride;
   ride.bike = options.bike_path.empty() ? stored : bike::read_bike_file(options.bike_path);
-  ride.log = {run.log_name, run.duration_s, 0.0, run.time.rate_hz, run.samples,
-              std::move(run.faults)};
+  ride.log = {run.log_name,     run.duration_s, 0.0,
+              run.time.rate_hz, run.samples,    std::move(run.faults)};
   ride.notes = std::move(run.notes);
   note_unused(run, ride, ride.notes);
   take_ends(run, ride);
@@ -126,7 +128,7 @@ archive::Run run_of(const Ride& ride) {
   run.speed_m_s = ride.speed_m_s;
   for (const RideEnd& end : ride.ends) {
     const bike::End& built = *ride.bike.end(end.name);
-    end_of(run, end.name) = archive::EndOfRun{end.motion, built.stroke_m};
+    end_of(run, end.name) = archive::EndOfRun{end.motion, built.stroke_m, end.felt_m_s2};
     end_of(run, end.name)->motion.source = end.measured_by;
     const auto* dyno = built.damper ? std::get_if<bike::DynoDamper>(&*built.damper) : nullptr;
     if (dyno) run.beside.push_back({dyno->file, dyno->text});

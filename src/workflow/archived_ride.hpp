@@ -6,7 +6,8 @@
 
 namespace clickwise::workflow {
 
-// Throws core::InputError as load_ride does; core::JobError when the archive has no end of the bike.
+// Throws core::InputError as load_ride does; core::JobError when the archive has no end of the
+// bike.
 Ride ride_of_archive(const RideOptions& options);
 
 // The ride as an archive keeps it; the events are the caller's.

@@ -37,8 +37,11 @@ Import import_run(const ImportOptions& options) {
   run.created = now_words();
   run.program = options.program;
   archive::write_archive(options.archive_path, run, events_of(ride));
-  Import result{options.archive_path, std::filesystem::file_size(options.archive_path), ride.log,
-                {}, ride.notes};
+  Import result{options.archive_path,
+                std::filesystem::file_size(options.archive_path),
+                ride.log,
+                {},
+                ride.notes};
   for (const RideEnd& end : ride.ends) result.ends.push_back(end.name);
   return result;
 }

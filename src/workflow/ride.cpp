@@ -192,8 +192,8 @@ Ride ride_of_log(const RideOptions& options) {
 }  // namespace
 
 Ride load_ride(const RideOptions& options) {
-  Ride ride = archive::is_archive(options.log_path) ? ride_of_archive(options)
-                                                    : ride_of_log(options);
+  Ride ride =
+      archive::is_archive(options.log_path) ? ride_of_archive(options) : ride_of_log(options);
   refuse_without_ride(ride, options.log_path);
   return ride;
 }

@@ -52,7 +52,8 @@ int converter_bits(const logs::ColumnFacts& column) {
 using Triple = std::array<std::size_t, 3>;
 
 // The columns whose names differ from this one's in y and z for an x.
-std::optional<Triple> triple_from(const std::vector<logs::ColumnFacts>& columns, std::size_t first) {
+std::optional<Triple> triple_from(const std::vector<logs::ColumnFacts>& columns,
+                                  std::size_t first) {
   const std::string name = columns[first].name;
   const auto column_of = [&](const std::string& wanted) {
     const auto found = std::find_if(columns.begin(), columns.end(),

@@ -52,6 +52,7 @@ archive::Run random_run() {
   run.front = archive::EndOfRun{random_motion(1), 0.17};
   run.rear = archive::EndOfRun{random_motion(2), 0.06};
   run.rear->motion.source = run::Source::imu_pair;
+  run.rear->felt_m_s2.assign(samples, 9.80665);
   run.time = run.front->motion.time;
   run.riding.assign(samples, 1);
   run.riding[5] = 0;
@@ -59,6 +60,7 @@ archive::Run random_run() {
   archive::round_to_stored(run.front->motion);
   archive::round_to_stored(run.rear->motion);
   archive::round_to_stored(run.speed_m_s);
+  archive::round_to_stored(run.rear->felt_m_s2);
   return run;
 }
 
@@ -84,6 +86,7 @@ void check_same(const archive::EndOfRun& a, const archive::EndOfRun& b) {
   CHECK(a.motion.time.start_s == b.motion.time.start_s);
   CHECK(a.motion.time.rate_hz == b.motion.time.rate_hz);
   CHECK(a.motion.time.samples == b.motion.time.samples);
+  CHECK(differences(a.felt_m_s2, b.felt_m_s2) == 0);
   CHECK(a.stroke_m == Approx(b.stroke_m).epsilon(1e-15));
 }
 
@@ -105,8 +108,8 @@ TEST_CASE("what is kept is the nearest float in mm, and keeping it twice changes
   }
   CHECK(far == 0);
   CHECK(no_float == 0);
-  CHECK(once.velocity_noise_m_s == core::from_mm(static_cast<double>(
-                                       static_cast<float>(core::to_mm(before.velocity_noise_m_s)))));
+  CHECK(once.velocity_noise_m_s == core::from_mm(static_cast<double>(static_cast<float>(
+                                       core::to_mm(before.velocity_noise_m_s)))));
   run::Motion twice = once;
   archive::round_to_stored(twice);
   CHECK(differences(once.travel_m, twice.travel_m) == 0);

@@ -26,8 +26,7 @@ Cost cheaper(const Cost& before, const std::function<void()>& job) {
   job();
   const std::chrono::duration<double> wall = std::chrono::steady_clock::now() - start;
   return {std::min(before.wall_s, wall.count()),
-          std::min(before.processor_s,
-                   static_cast<double>(std::clock() - used) / CLOCKS_PER_SEC)};
+          std::min(before.processor_s, static_cast<double>(std::clock() - used) / CLOCKS_PER_SEC)};
 }
 
 void print(const char* what, const Cost& cost) {

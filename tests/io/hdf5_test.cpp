@@ -135,7 +135,8 @@ TEST_CASE("a file cut off anywhere is refused, and a damaged chunk is never give
   }
   const std::string whole = contents(file.path());
   for (const double share : {0.0001, 0.1, 0.5, 0.9, 0.9999}) {
-    file.write(whole.substr(0, static_cast<std::size_t>(share * static_cast<double>(whole.size()))));
+    file.write(
+        whole.substr(0, static_cast<std::size_t>(share * static_cast<double>(whole.size()))));
     CHECK_THAT(test::refusal([&] { io::Hdf5File{file.path()}; }),
                Contains("cut off or damaged") || Contains("no HDF5 file"));
   }
@@ -144,7 +145,9 @@ TEST_CASE("a file cut off anywhere is refused, and a damaged chunk is never give
   flipped[whole.size() / 2] = static_cast<char>(flipped[whole.size() / 2] ^ 4);
   file.write(flipped);
   const io::Hdf5File read(file.path());
-  CHECK_THAT(test::refusal([&] { read.numbers({{"/floats", 1.0}}); }),
+  CHECK_THAT(test::refusal([&] {
+               read.numbers({{"/floats", 1.0}});
+             }),
              Contains("/floats cannot be read"));
   CHECK_THAT(test::refusal([&] { read.numbers("/floats"); }), Contains("/floats cannot be read"));
 }

@@ -73,12 +73,15 @@ TEST_CASE("a group or data set that does not fit is named with what to do", "[lo
   CHECK_THAT(refused("/", {"fork", 0}), Contains("the group / holds no data sets"));
   bike::LogFormat text;
   text.time = bike::TimeColumn{{"t_us", 0}, 1e-6};
-  CHECK_THAT(test::refusal([&] { logs::read_log(file.path(), text, {{"fork", 0}}); }),
+  CHECK_THAT(test::refusal([&] {
+               logs::read_log(file.path(), text, {{"fork", 0}});
+             }),
              Contains("add hdf5 = { group = \"/ride\" } to [log]"));
   const test::LogFile csv("t_us,fork\n0,1\n1,2\n");
-  CHECK_THAT(
-      test::refusal([&] { logs::read_log(csv.path(), in_group("/ride"), {{"fork", 0}}); }),
-      Contains("no HDF5 file"));
+  CHECK_THAT(test::refusal([&] {
+               logs::read_log(csv.path(), in_group("/ride"), {{"fork", 0}});
+             }),
+             Contains("no HDF5 file"));
 }
 
 TEST_CASE("without a bike file the richest group is told, and all that the file holds", "[logs]") {

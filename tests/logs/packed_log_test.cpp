@@ -1,5 +1,5 @@
-#include <catch2/catch.hpp>
 #include <bit>
+#include <catch2/catch.hpp>
 #include <cmath>
 #include <cstdint>
 #include <string>
@@ -71,17 +71,31 @@ TEST_CASE("every type of field is read in both byte orders", "[logs]") {
     const test::LogFile file(bytes.bytes());
     bike::LogFormat format;
     format.rate_hz = 100.0;
-    format.packed = bike::PackedFrames{
-        big, 0, {{"u8", FieldType::u8}, {"i8", FieldType::i8}, {"u16", FieldType::u16},
-                 {"i16", FieldType::i16}, {"u32", FieldType::u32}, {"i32", FieldType::i32},
-                 {"u64", FieldType::u64}, {"i64", FieldType::i64}, {"f32", FieldType::f32},
-                 {"f64", FieldType::f64}}};
+    format.packed = bike::PackedFrames{big,
+                                       0,
+                                       {{"u8", FieldType::u8},
+                                        {"i8", FieldType::i8},
+                                        {"u16", FieldType::u16},
+                                        {"i16", FieldType::i16},
+                                        {"u32", FieldType::u32},
+                                        {"i32", FieldType::i32},
+                                        {"u64", FieldType::u64},
+                                        {"i64", FieldType::i64},
+                                        {"f32", FieldType::f32},
+                                        {"f64", FieldType::f64}}};
     std::vector<bike::ColumnRef> all;
     for (int i = 1; i <= 10; ++i) all.push_back({"", i});
     const run::Recording recording = logs::read_log(file.path(), format, all);
-    const std::vector<double> expected{2.0,          -128.0,       65535.0, -32768.0,
-                                       4294967295.0, -2147483648.0, 0x1p63,  -1.0,
-                                       static_cast<double>(0.1F),   0.30000000000000004};
+    const std::vector<double> expected{2.0,
+                                       -128.0,
+                                       65535.0,
+                                       -32768.0,
+                                       4294967295.0,
+                                       -2147483648.0,
+                                       0x1p63,
+                                       -1.0,
+                                       static_cast<double>(0.1F),
+                                       0.30000000000000004};
     REQUIRE(recording.channels.size() == expected.size());
     for (std::size_t i = 0; i < expected.size(); ++i) {
       INFO(recording.channels[i].name << (big ? ", big" : ", little"));
@@ -135,9 +149,9 @@ TEST_CASE("a wrong frame is refused, and the one that would fit is told", "[logs
   SECTION("one field too many, at the end") {
     bike::LogFormat format = time_and_fork();
     format.packed->frame.push_back({"shock_adc", FieldType::u16});
-    CHECK_THAT(refused(ramp(1000), format),
-               Contains("8 bytes, little-endian") && Contains("jumps about") &&
-                   Contains("with frames of 6 bytes in place of 8"));
+    CHECK_THAT(refused(ramp(1000), format), Contains("8 bytes, little-endian") &&
+                                                Contains("jumps about") &&
+                                                Contains("with frames of 6 bytes in place of 8"));
   }
   SECTION("the other byte order") {
     CHECK_THAT(refused(ramp(1000), time_and_fork(true)), Contains("with endian = \"little\""));
@@ -146,13 +160,13 @@ TEST_CASE("a wrong frame is refused, and the one that would fit is told", "[logs
     // Readings that do not climb as a clock does.
     Frames bytes(false);
     for (std::size_t i = 0; i < 1000; ++i) bytes.add(1000 * i, 4).add(1000 + i * 7919 % 400, 2);
-    CHECK_THAT(refused("HEAD" + bytes.bytes(), time_and_fork()),
-               Contains("with header_bytes = 4"));
+    CHECK_THAT(refused("HEAD" + bytes.bytes(), time_and_fork()), Contains("with header_bytes = 4"));
   }
   SECTION("no file of frames at all") {
     std::string noise;
     std::uint32_t state = 7;
-    for (int i = 0; i < 6000; ++i) noise += static_cast<char>((state = state * 1664525U + 1013904223U) >> 24U);
+    for (int i = 0; i < 6000; ++i)
+      noise += static_cast<char>((state = state * 1664525U + 1013904223U) >> 24U);
     CHECK_THAT(refused(noise, time_and_fork()),
                Contains("jumps about") && Contains("check the fields") && !Contains("would run"));
   }

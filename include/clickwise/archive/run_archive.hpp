@@ -19,6 +19,7 @@ inline constexpr std::string_view schema = "clickwise-run-1";
 struct EndOfRun {
   run::Motion motion;  // its source: what it was measured by; its base: the run's
   double stroke_m = 0.0;
+  std::vector<double> felt_m_s2 = {};  // sprung side's accelerometer, NaN: none; empty: not logged
 };
 
 struct TextFile {
@@ -33,13 +34,13 @@ struct Run {
   TextFile bike;                 // the bike file, named without its folder
   std::vector<TextFile> beside;  // files that it names, as it names them: dyno tables
   std::string log_name;
-  double duration_s = 0.0;   // first sample to last
-  std::size_t samples = 0;   // of the log
+  double duration_s = 0.0;  // first sample to last
+  std::size_t samples = 0;  // of the log
   run::FaultLedger faults;
   std::vector<std::string> notes;
-  run::TimeBase time;                 // of every series below
-  std::vector<std::uint8_t> riding;   // 1: counts as riding
-  std::vector<double> speed_m_s;      // ridden speed, NaN: none; empty: not logged
+  run::TimeBase time;                // of every series below
+  std::vector<std::uint8_t> riding;  // 1: counts as riding
+  std::vector<double> speed_m_s;     // ridden speed, NaN: none; empty: not logged
   std::optional<EndOfRun> front;
   std::optional<EndOfRun> rear;
 };
@@ -62,8 +63,8 @@ struct Events {
 // a second time changes nothing. So figures taken from a log after this are those taken from its
 // archive, bit for bit.
 void round_to_stored(run::Motion& motion);
-// The same for speeds, kept in m/s.
-void round_to_stored(std::vector<double>& speed_m_s);
+// The same for a series kept in SI: speeds and accelerations.
+void round_to_stored(std::vector<double>& values);
 
 // Writes the archive whole or not at all: beside its place, brought to the disk, then renamed. The
 // motions and speeds must be rounded to what is stored. Throws core::JobError where the disk does

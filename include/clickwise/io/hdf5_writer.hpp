@@ -11,9 +11,10 @@
 namespace clickwise::io {
 
 // Names are paths from the root; the groups in front must be there. Data sets are cut into chunks,
-// their bytes sorted by place (shuffle), deflated and given a checksum (of floats it is zlib's); lists without entries and
-// single texts are stored plain, the latter with their CRC-32 beside `units`. Every data set gets its `units`. Readable by HDF5 1.8 (2008) and
-// later. A failure of the library is a std::runtime_error: nothing that a user gives causes one.
+// their bytes sorted by place (shuffle), deflated and given a checksum (of floats it is zlib's);
+// lists without entries and single texts are stored plain, the latter with their CRC-32 beside
+// `units`. Every data set gets its `units`. Readable by HDF5 1.8 (2008) and later. A failure of the
+// library is a std::runtime_error: nothing that a user gives causes one.
 class Hdf5Writer {
 public:
   Hdf5Writer();

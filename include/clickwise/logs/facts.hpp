@@ -42,8 +42,8 @@ struct TimeGuess {
 };
 
 struct LogFacts {
-  std::string name;   // the file's, without its folder
-  TextFormat format;  // its views into the text are empty
+  std::string name;                   // the file's, without its folder
+  TextFormat format;                  // its views into the text are empty
   std::string hdf5_group;             // of the columns; empty: no HDF5
   std::string binary_format;          // what a log is that is no text; empty for text
   std::vector<std::string> contents;  // groups and data sets of an HDF5 file, a line each
@@ -67,9 +67,9 @@ struct LogFacts {
 // core::InputError as read_log does; a column that turns out to be no clock is only noted.
 LogFacts inspect_log(const std::string& path, const bike::LogFormat* format = nullptr);
 
-// Of a text log. Reads every column, in groups that keep the memory below some 256 MiB beside the mapped file.
-// With `format`, its time column or rate is taken instead of a guess. Throws core::InputError as
-// read_text_log does; a column that turns out to be no clock is only noted.
+// Of a text log. Reads every column, in groups that keep the memory below some 256 MiB beside the
+// mapped file. With `format`, its time column or rate is taken instead of a guess. Throws
+// core::InputError as read_text_log does; a column that turns out to be no clock is only noted.
 LogFacts inspect_text_log(const std::string& path, const bike::LogFormat* format = nullptr);
 
 }  // namespace clickwise::logs

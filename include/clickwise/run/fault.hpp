@@ -26,14 +26,14 @@ struct Fault {
 
 // Adds to the entry of the same kind and channel, or makes one. Entries with count 0 never appear.
 class FaultLedger {
- public:
+public:
   void add(FaultKind kind, std::string_view channel, long long count, double seconds);
   void merge(const FaultLedger& other);
   const std::vector<Fault>& faults() const { return faults_; }
   bool empty() const { return faults_.empty(); }
   long long count(FaultKind kind) const;
 
- private:
+private:
   std::vector<Fault> faults_;
 };
 
