@@ -5,7 +5,7 @@
 #include "clickwise/io/mapped_file.hpp"
 #include "clickwise/logs/facts.hpp"
 #include "clickwise/logs/text_log.hpp"
-#include "hdf5_group.hpp"
+#include "group_channels.hpp"
 #include "packed_frames.hpp"
 
 namespace clickwise::logs {

@@ -2,7 +2,6 @@
 
 #include <fmt/format.h>
 #include <catch2/catch.hpp>
-
 #include <cmath>
 
 #include "support/log_file.hpp"
@@ -58,7 +57,7 @@ TEST_CASE("a pair of IMUs is offered whole, in comments, beside the fork's count
              Contains("# upper = { accel = [\"upper_acc_x\", \"upper_acc_y\", \"upper_acc_z\"], "
                       "gyro = [\"upper_gyro_x\", \"upper_gyro_y\", \"upper_gyro_z\"] }"));
   CHECK_THAT(starter, Contains("# lower = { accel = [\"lower_acc_x\""));
-  CHECK_THAT(starter, Contains("column = \"fork_adc\"   # reads 300 to 1700 in this log: counts of "
+  CHECK_THAT(starter, Contains("column = \"fork_adc\"   # reads 301 to 1699 in this log: counts of "
                                "a converter of 12 bits"));
   CHECK_THAT(starter, !Contains("also numeric: upper"));
   CHECK_THAT(starter_of("t_ms,fork_mm\n0,1.5\n1,2.5\n2,1.5\n3,2.5\n"),

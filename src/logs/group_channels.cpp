@@ -1,4 +1,4 @@
-#include "hdf5_group.hpp"
+#include "group_channels.hpp"
 
 #include <fmt/format.h>
 
