@@ -240,7 +240,7 @@ class Archive(program.Scratch):
 
     def test_damaged_bytes_never_give_other_figures(self):
         draw = random.Random(11)
-        whole = self.review("run.h5")
+        whole = self.review("run.h5", "--by-rule")
         refused = 0
         for turn in range(250):
             damaged = bytearray(self.bytes)
@@ -250,7 +250,7 @@ class Archive(program.Scratch):
             for i in range(at, min(at + draw.choice([1, 1, 4, 64]), len(damaged))):
                 damaged[i] ^= 1 << draw.randrange(8)
             (self.folder / "hurt.h5").write_bytes(damaged)
-            done = program.run("review", "hurt.h5", "--json", "-", cwd=self.folder)
+            done = program.run("review", "hurt.h5", "--by-rule", "--json", "-", cwd=self.folder)
             with self.subTest((turn, at)):
                 self.assertIn(done.status, (0, 2), done.err)
                 if done.status == 0:
