@@ -16,6 +16,29 @@ double SprungAccel::m_s2_per_unit() const {
   return (is_up ? 1.0 : -1.0) * (in_g ? core::standard_gravity_m_s2 : 1.0);
 }
 
+std::size_t size_of(FieldType type) {
+  switch (type) {
+    case FieldType::u8:
+    case FieldType::i8:
+      return 1;
+    case FieldType::u16:
+    case FieldType::i16:
+      return 2;
+    case FieldType::u32:
+    case FieldType::i32:
+    case FieldType::f32:
+      return 4;
+    default:
+      return 8;
+  }
+}
+
+std::size_t PackedFrames::frame_bytes() const {
+  std::size_t bytes = 0;
+  for (const PackedField& field : frame) bytes += size_of(field.type);
+  return bytes;
+}
+
 const std::optional<Clicks>& DynoDamper::counted(Adjuster adjuster) const {
   switch (adjuster) {
     case Adjuster::low_speed_compression:

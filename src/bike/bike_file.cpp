@@ -57,7 +57,7 @@ std::string stem(const std::string& path) {
 
 }  // namespace
 
-Bike parse_bike(const std::string& text, const std::string& path) {
+Bike parse_bike(const std::string& text, const std::string& path, const FilesBeside& beside) {
   const io::TomlTable root = io::parse_toml(text, path);
   check_schema(root);
   Bike bike;
@@ -67,7 +67,7 @@ Bike parse_bike(const std::string& text, const std::string& path) {
   bike.log = read_log(root);
   read_masses(root, bike);
   for (const EndName name : both_ends)
-    if (const auto end = root.table(to_string(name))) bike.end(name) = read_end(*end);
+    if (const auto end = root.table(to_string(name))) bike.end(name) = read_end(*end, beside);
   bike.aims = read_aims(root);
   root.finish();
   if (!bike.front && !bike.rear)

@@ -5,6 +5,7 @@
 #include <string_view>
 
 #include "clickwise/bike/bike.hpp"
+#include "clickwise/bike/bike_file.hpp"
 #include "clickwise/io/toml.hpp"
 
 namespace clickwise::bike {
@@ -30,15 +31,15 @@ LogFormat read_log(const io::TomlTable& root);
 Aims read_aims(const io::TomlTable& root);
 Potentiometer read_sensor(const io::TomlTable& end);
 Spring read_spring(const io::TomlTable& spring, double stroke_m);
-Damper read_damper(const io::TomlTable& damper);
+Damper read_damper(const io::TomlTable& damper, const FilesBeside& beside);
 
-// Reads the table that `damper.file` names, beside the bike file, and counts the adjusters that the
-// bike file does not count by the table's columns. The file must be CSV with the columns
+// Reads the dyno table in damper.text, that of the file at `path`, and counts the adjusters that
+// the bike file does not count by the table's columns. The file must be CSV with the columns
 // velocity_mm_s and force_n and one for each adjuster that was turned; blank lines and lines that
 // begin with '#' are skipped. Rows at rest are left out, with a note. Throws core::InputError with
 // the table's line for the first thing wrong.
 void read_dyno_table(const std::string& path, DynoDamper& damper);
 
-End read_end(const io::TomlTable& end);
+End read_end(const io::TomlTable& end, const FilesBeside& beside);
 
 }  // namespace clickwise::bike

@@ -2,6 +2,7 @@
 
 #include "bike_readers.hpp"
 #include "clickwise/core/units.hpp"
+#include "clickwise/io/mapped_file.hpp"
 
 namespace clickwise::bike {
 
@@ -92,14 +93,19 @@ void read_all_counted(const io::TomlTable& damper, CountedDamper& result) {
   result.valve_rebound = read_counted(damper, "rebound", "valve");
 }
 
-DynoDamper read_dyno(const io::TomlTable& damper) {
+DynoDamper read_dyno(const io::TomlTable& damper, const FilesBeside& beside) {
   DynoDamper result;
   result.file = damper.need_text("file", "fork_dyno.csv");
   read_all_counted(damper, result);
   const auto folder = std::filesystem::path(damper.place().file).parent_path();
   const std::string path = (folder / result.file).string();
+  const auto given = beside.find(result.file);
   std::error_code none;
-  if (!std::filesystem::exists(path, none))
+  if (given != beside.end())
+    result.text = given->second;
+  else if (std::filesystem::exists(path, none))
+    result.text = io::MappedFile(path).text();
+  else
     damper.find("file")->refuse("there is no such file (looked for " + path + ")",
                                 "put the dyno table beside the bike file, or name its folder too");
   read_dyno_table(path, result);
@@ -119,10 +125,10 @@ AssumedDamper read_assumed(const io::TomlTable& damper) {
 
 }  // namespace
 
-Damper read_damper(const io::TomlTable& damper) {
+Damper read_damper(const io::TomlTable& damper, const FilesBeside& beside) {
   const std::string kind = damper.need_choice("kind", {"hydraulic", "dyno", "assumed"});
   if (kind == "hydraulic") return read_hydraulic(damper);
-  if (kind == "dyno") return read_dyno(damper);
+  if (kind == "dyno") return read_dyno(damper, beside);
   return read_assumed(damper);
 }
 

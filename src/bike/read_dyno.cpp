@@ -7,7 +7,6 @@
 #include "bike_readers.hpp"
 #include "clickwise/core/units.hpp"
 #include "clickwise/io/delimited.hpp"
-#include "clickwise/io/mapped_file.hpp"
 #include "clickwise/io/number.hpp"
 
 namespace clickwise::bike {
@@ -259,11 +258,10 @@ void read_rows(Rows& rows, DynoDamper& damper) {
 }  // namespace
 
 void read_dyno_table(const std::string& path, DynoDamper& damper) {
-  const io::MappedFile file(path);
-  if (file.text().size() > most_bytes)
+  if (damper.text.size() > most_bytes)
     throw core::InputError({path}, "the file is too large for a dyno table",
                            "average the dyno's trace over bands of speed first");
-  Rows rows(file.text(), path);
+  Rows rows(damper.text, path);
   read_rows(rows, damper);
   check_signs(damper.points, path);
   for (const Adjuster adjuster : all_adjusters) {

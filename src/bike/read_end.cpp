@@ -90,7 +90,7 @@ SprungAccel read_sprung_accel(const io::TomlTable& table) {
   return accel;
 }
 
-void read_optional_parts(const io::TomlTable& table, End& end) {
+void read_optional_parts(const io::TomlTable& table, const FilesBeside& beside, End& end) {
   if (const auto accel = table.table("sprung_accel")) end.sprung_accel = read_sprung_accel(*accel);
   if (const auto tyre = table.table("tyre")) end.tyre = read_tyre(*tyre);
   if (const auto ratio = table.find("ratio")) end.ratio = read_ratio(*ratio, end.stroke_m);
@@ -100,7 +100,7 @@ void read_optional_parts(const io::TomlTable& table, End& end) {
   if (const auto split = table.table("split")) end.split = read_split(*split);
   if (const auto spring = table.table("spring")) end.spring = read_spring(*spring, end.stroke_m);
   if (const auto damper = table.table("damper")) {
-    end.damper = read_damper(*damper);
+    end.damper = read_damper(*damper, beside);
     end.damper_place = damper->place();
   }
 }
@@ -123,7 +123,7 @@ Potentiometer read_sensor(const io::TomlTable& end) {
   return result;
 }
 
-End read_end(const io::TomlTable& table) {
+End read_end(const io::TomlTable& table, const FilesBeside& beside) {
   End end;
   end.stroke_m = core::from_mm(
       table.need_number("stroke_mm", {.least = 10.0, .most = 500.0, .example = 170.0}));
@@ -132,7 +132,7 @@ End read_end(const io::TomlTable& table) {
       read_either(table, mass("unsprung_mass_kg", "unsprung_mass_lb", 0.1, 30.0, 2.9));
   end.friction_n =
       table.number_or("friction_n", end.friction_n, {.least = 0.0, .most = 1000.0, .example = 15});
-  read_optional_parts(table, end);
+  read_optional_parts(table, beside, end);
   return end;
 }
 

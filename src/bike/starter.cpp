@@ -73,10 +73,17 @@ std::string log_table(const StarterFacts& facts) {
                         as_value(*facts.time), quoted(facts.time_unit));
   else
     text += "rate_hz = \"?\"   # samples per second: no time column was found\n";
+  if (!facts.hdf5_group.empty())
+    text += fmt::format("hdf5 = {{ group = {} }}\n", quoted(facts.hdf5_group));
   if (facts.speed)
     text += fmt::format("speed = {{ column = {}, unit = {} }}   # check the unit: m/s or km/h\n",
                         as_value(*facts.speed), quoted(facts.speed_unit));
   return text;
+}
+
+std::string counts_words(const StarterColumn& column) {
+  if (column.converter_bits == 0) return "";
+  return fmt::format(": counts of a converter of {} bits", column.converter_bits);
 }
 
 std::string end_table(EndName end, const std::optional<StarterColumn>& column) {
@@ -86,8 +93,8 @@ std::string end_table(EndName end, const std::optional<StarterColumn>& column) {
       "\n[{0}.sensor]\nkind = \"potentiometer\"\n",
       name, part(end));
   if (column)
-    text += fmt::format("column = {}   # reads {} to {} in this log\n", as_value(column->column),
-                        column->least, column->most);
+    text += fmt::format("column = {}   # reads {} to {} in this log{}\n", as_value(column->column),
+                        column->least, column->most, counts_words(*column));
   else
     text += "column = \"?\"   # header or number of the column that holds the sensor's reading\n";
   text += fmt::format(
@@ -111,6 +118,48 @@ std::string rest(const Columns& left) {
          "# rebound = { bleed = { clicks = 18, setting = 9 } }\n";
 }
 
+std::string triple(const StarterImu& imu) {
+  return fmt::format("[{}, {}, {}]", as_value(imu.columns[0]), as_value(imu.columns[1]),
+                     as_value(imu.columns[2]));
+}
+
+// One unit of a pair: the n-th accelerometer and gyro.
+std::string unit_of(const StarterFacts& facts, std::size_t n) {
+  std::string text;
+  for (const bool accelerometer : {true, false}) {
+    std::size_t seen = 0;
+    for (const StarterImu& imu : facts.imus)
+      if (imu.accelerometer == accelerometer && seen++ == n)
+        text += fmt::format("{}{} = {}", text.empty() ? "" : ", ", accelerometer ? "accel" : "gyro",
+                            triple(imu));
+  }
+  return text.empty() ? "\"?\"" : "{ " + text + " }";
+}
+
+std::string unit_line(const StarterFacts& facts, bool accelerometer) {
+  const auto found = std::find_if(facts.imus.begin(), facts.imus.end(), [&](const StarterImu& imu) {
+    return imu.accelerometer == accelerometer;
+  });
+  if (found == facts.imus.end()) return "";
+  if (!accelerometer)
+    return fmt::format("# gyro_unit = {}   # by its size; check it\n", quoted(found->unit));
+  return fmt::format("# accel_unit = {}   # its mean is {:.3g} long: {}\n", quoted(found->unit),
+                     found->size,
+                     found->unit == "?" ? "neither g nor m/s2; write the columns in one of them"
+                                        : "gravity; check it");
+}
+
+std::string imu_pair(const StarterFacts& facts) {
+  if (facts.imus.empty()) return "";
+  return "\n# The log holds what look like IMUs. A pair of them, one on the sprung and one on the "
+         "unsprung\n# side of one end, can stand for its sensor: complete this and take it in "
+         "place of [front.sensor].\n# [front.sensor]\n# kind = \"imu_pair\"\n# upper = " +
+         unit_of(facts, 0) + "   # sprung side\n# lower = " + unit_of(facts, 1) +
+         "   # unsprung side\n" + unit_line(facts, true) + unit_line(facts, false) +
+         "# axis = [\"?\", \"?\", \"?\"]   # direction in which the lower unit moves into "
+         "compression, in the units' frame\n";
+}
+
 }  // namespace
 
 std::string starter_bike(const StarterFacts& facts) {
@@ -128,7 +177,7 @@ std::string starter_bike(const StarterFacts& facts) {
   text += log_table(facts);
   if (front || !rear) text += end_table(EndName::front, front);
   if (rear) text += end_table(EndName::rear, rear);
-  return text + "\n" + rest(left);
+  return text + imu_pair(facts) + "\n" + rest(left);
 }
 
 }  // namespace clickwise::bike

@@ -43,6 +43,13 @@ CLI::App* add_command(CLI::App& app, Common& common, const std::string& name,
   return command;
 }
 
+void add_ride(CLI::App& command, workflow::RideOptions& ride) {
+  command.add_option("LOG", ride.log_path, "the log of the run, or its archive")->required();
+  command.add_option("--bike", ride.bike_path, "the bike file; an archive brings its own")
+      ->type_name("BIKE.toml")
+      ->check(not_empty());
+}
+
 void add_output(CLI::App& command, Output& output, const std::string& writes) {
   command.add_option("-o,--output", output.folder, "folder to write " + writes + " into")
       ->type_name("DIR")

@@ -6,6 +6,8 @@
 #include <string>
 #include <vector>
 
+#include "clickwise/workflow/ride.hpp"
+
 namespace clickwise::cli {
 
 inline constexpr const char* program_version = "clickwise " CLICKWISE_VERSION;
@@ -25,6 +27,9 @@ struct Output {
 // A subcommand with the common options on it.
 CLI::App* add_command(CLI::App& app, Common& common, const std::string& name,
                       const std::string& does);
+
+// LOG and --bike.
+void add_ride(CLI::App& command, workflow::RideOptions& ride);
 
 void add_output(CLI::App& command, Output& output, const std::string& writes);
 void add_json_output(CLI::App& command, Output& output);
@@ -47,5 +52,6 @@ void add_inspect(CLI::App& app, Common& common);
 void add_simulate(CLI::App& app, Common& common);
 void add_damper(CLI::App& app, Common& common);
 void add_replay(CLI::App& app, Common& common);
+void add_import(CLI::App& app, Common& common);
 
 }  // namespace clickwise::cli

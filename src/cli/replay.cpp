@@ -36,10 +36,7 @@ void add_replay(CLI::App& app, Common& common) {
   auto arguments = std::make_shared<Arguments>();
   CLI::App* command = add_command(app, common, "replay",
                                   "What the same ground would have done with other settings");
-  command->add_option("LOG", arguments->options.ride.log_path, "the log of the run")->required();
-  command->add_option("--bike", arguments->options.ride.bike_path, "the bike file")
-      ->required()
-      ->type_name("BIKE.toml");
+  add_ride(*command, arguments->options.ride);
   command
       ->add_option("--set", arguments->options.settings,
                    "a setting to try, as in front.low_speed_compression=4; repeatable")

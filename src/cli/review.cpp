@@ -38,10 +38,7 @@ void add_review(CLI::App& app, Common& common) {
   auto arguments = std::make_shared<Arguments>();
   CLI::App* command =
       add_command(app, common, "review", "One run: bands, travel, events and what to turn");
-  command->add_option("LOG", arguments->options.ride.log_path, "the log of the run")->required();
-  command->add_option("--bike", arguments->options.ride.bike_path, "the bike file")
-      ->required()
-      ->type_name("BIKE.toml");
+  add_ride(*command, arguments->options.ride);
   command
       ->add_option("--smooth", arguments->smooth_ms,
                    "smoothing span chosen by hand instead of from the log, ms")

@@ -66,6 +66,7 @@ int run(int argc, const char* const* argv) {
   add_simulate(app, common);
   add_damper(app, common);
   add_replay(app, common);
+  add_import(app, common);
   try {
     refuse_unknown_command(app, argc, argv);
     app.parse(argc, argv);

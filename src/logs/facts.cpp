@@ -9,8 +9,7 @@
 #include "clickwise/core/utf8.hpp"
 #include "clickwise/io/timestamp.hpp"
 #include "clickwise/logs/clock.hpp"
-#include "clock_steps.hpp"
-#include "decimal_grid.hpp"
+#include "column_facts.hpp"
 #include "guess_time.hpp"
 #include "text_rows.hpp"
 
@@ -20,40 +19,6 @@ namespace {
 
 constexpr std::size_t group_bytes = std::size_t{1} << 28U;
 constexpr std::size_t likely_bytes_per_row = 4;  // the least that two columns take
-
-std::vector<double> readable(const std::vector<double>& values) {
-  std::vector<double> numbers;
-  std::copy_if(values.begin(), values.end(), std::back_inserter(numbers),
-               [](double value) { return !std::isnan(value); });
-  return numbers;
-}
-
-ColumnKind kind_of_column(const io::Column& column, io::CellKind cells, const ColumnFacts& facts) {
-  if (facts.count == 0) return column.unreadable_cells > 0 ? ColumnKind::text : ColumnKind::empty;
-  if (cells == io::CellKind::timestamp) return ColumnKind::timestamp;
-  if (column.unreadable_cells > facts.count) return ColumnKind::text;
-  return facts.least == facts.most ? ColumnKind::constant : ColumnKind::number;
-}
-
-ColumnFacts describe(const io::Column& column, io::CellKind cells, Advance& advance) {
-  ColumnFacts facts;
-  const std::vector<double> numbers = readable(column.values);
-  facts.count = numbers.size();
-  facts.missing = column.values.size() - numbers.size();
-  if (!numbers.empty()) {
-    const auto [least, most] = std::minmax_element(numbers.begin(), numbers.end());
-    facts.least = *least;
-    facts.most = *most;
-    facts.resolution = decimal_grid(numbers);
-  }
-  facts.kind = kind_of_column(column, cells, facts);
-  if (numbers.size() < 2) return facts;
-  std::size_t rising = 0;
-  for (std::size_t i = 1; i < numbers.size(); ++i) rising += numbers[i] >= numbers[i - 1];
-  advance.rising_share = static_cast<double>(rising) / static_cast<double>(numbers.size() - 1);
-  if (advance.rising_share > 0.9) advance.typical_step = rough_interval(numbers);
-  return facts;
-}
 
 // Describes the columns in groups, so that a log of many columns does not fill the memory.
 std::vector<Advance> describe_columns(LogFacts& facts, const TextRows& rows,
@@ -98,17 +63,6 @@ std::optional<TimeGuess> told_time(const TextRows& rows, const bike::LogFormat& 
   return told;
 }
 
-void describe_clock(LogFacts& facts, const Clock& clock) {
-  facts.duration_s = clock.t_s.empty() ? 0.0 : clock.t_s.back();
-  facts.rate_hz = 1.0 / clock.interval_s;
-  facts.clock_resolution_s = clock.resolution_s;
-  facts.longest_gap_s = clock.longest_gap_s;
-  facts.wraps = clock.wraps;
-  facts.repeated_stamps = clock.repeated_stamps;
-  facts.faults.merge(clock.faults);
-  facts.notes.insert(facts.notes.end(), clock.notes.begin(), clock.notes.end());
-}
-
 double lay_time(LogFacts& facts, const TextRows& rows, const TimeGuess& time) {
   const io::CellKind kind = rows.kind_of(time.column);
   io::Columns read = rows.read({{time.column, kind}}, false);
@@ -126,21 +80,6 @@ double lay_time(LogFacts& facts, const TextRows& rows, const TimeGuess& time) {
 }
 
 }  // namespace
-
-std::string_view to_string(ColumnKind kind) {
-  switch (kind) {
-    case ColumnKind::number:
-      return "number";
-    case ColumnKind::constant:
-      return "constant";
-    case ColumnKind::timestamp:
-      return "timestamp";
-    case ColumnKind::text:
-      return "text";
-    default:
-      return "empty";
-  }
-}
 
 LogFacts inspect_text_log(const std::string& path, const bike::LogFormat* format) {
   const TextRows rows(path);

@@ -42,9 +42,15 @@ std::string near_miss(const std::string& wanted, const std::vector<std::string>&
   return {};
 }
 
+// The line of the header; the file as a whole where there are no lines.
+core::Place header_place(const TextFormat& format, const std::string& path) {
+  if (format.data_line == 0) return {path};
+  return {path, static_cast<int>(std::max(1LL, format.data_line - 1))};
+}
+
 [[noreturn]] void refuse_unknown(const TextFormat& format, const std::string& name,
                                  const std::string& path) {
-  const core::Place place{path, static_cast<int>(std::max(1LL, format.data_line - 1))};
+  const core::Place place = header_place(format, path);
   const std::string columns = std::to_string(format.layout.columns);
   if (!format.has_header)
     throw core::InputError({path, static_cast<int>(format.data_line)},
@@ -97,8 +103,7 @@ std::size_t find_column(const TextFormat& format, const bike::ColumnRef& column,
   const auto number = [&](auto name) { return std::to_string(name - format.names.begin() + 1); };
   if (second != format.names.end())
     throw core::InputError(
-        {path, static_cast<int>(std::max(1LL, format.data_line - 1))},
-        "the log has more than one column \"" + column.name + "\"",
+        header_place(format, path), "the log has more than one column \"" + column.name + "\"",
         "give the number instead: column = " + number(first) + " or " + number(second));
   return static_cast<std::size_t>(first - format.names.begin());
 }

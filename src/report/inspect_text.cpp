@@ -50,7 +50,8 @@ std::string column_line(const logs::ColumnFacts& column) {
   } else {
     line += fmt::format(" {:>36}", column.example.substr(0, 36));
   }
-  return line + fmt::format(" {:>9}", column.missing);
+  line += fmt::format(" {:>9}", column.missing);
+  return column.units.empty() ? line : line + "  " + column.units;
 }
 
 std::string end_line(const workflow::InspectedEnd& end) {
@@ -71,12 +72,14 @@ void add_list(std::string& text, const std::string& heading,
 
 std::string inspect_text(const workflow::Inspection& inspection) {
   const logs::LogFacts& facts = inspection.facts;
-  std::string text = fmt::format("{}: {} rows, {} columns; {}\n{}\n\n", facts.name, facts.rows,
-                                 facts.columns.size(), format_words(facts.format),
-                                 clock_words(facts, !inspection.starter_bike.empty()));
+  std::string text = fmt::format(
+      "{}: {} rows, {} columns; {}\n{}\n\n", facts.name, facts.rows, facts.columns.size(),
+      facts.binary_format.empty() ? format_words(facts.format) : facts.binary_format,
+      clock_words(facts, !inspection.starter_bike.empty()));
   text += fmt::format("  {:>3}  {:<24} {:<10} {:>12} {:>12} {:>10} {:>9}\n", "", "column", "kind",
                       "least", "most", "step", "missing");
   for (const logs::ColumnFacts& column : facts.columns) text += column_line(column) + "\n";
+  add_list(text, "The file holds", facts.contents);
   if (!inspection.ends.empty()) text += "\nTravel\n";
   for (const workflow::InspectedEnd& end : inspection.ends) text += end_line(end) + "\n";
   const std::vector<std::string> faults = fault_words(inspection.faults);

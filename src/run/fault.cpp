@@ -17,16 +17,28 @@ constexpr std::array<Row, 7> table{{
     {"time_restart", "the clock jumped back: the logger restarted in mid-log; check its power"},
     {"spike", "single readings jumped: check the sensor's plug, its wiring and its screen"},
     {"stuck", "the reading froze while the rest moved: check the sensor's linkage and its plug"},
-    {"saturated", "the reading stood at the converter's end: check the supply and the sensor range"},
+    {"saturated",
+     "the reading stood at the converter's end: check the supply and the sensor range"},
     {"missing", "cells were empty or no numbers: check the logger's settings and its card"},
-    {"truncated", "the last line was cut off: the logger lost power; end a log before switching off"},
+    {"truncated",
+     "the last line was cut off: the logger lost power; end a log before switching off"},
 }};
 
 }  // namespace
 
-std::string_view to_string(FaultKind kind) { return table.at(static_cast<std::size_t>(kind)).name; }
+std::string_view to_string(FaultKind kind) {
+  return table.at(static_cast<std::size_t>(kind)).name;
+}
 
-std::string_view advice(FaultKind kind) { return table.at(static_cast<std::size_t>(kind)).advice; }
+std::optional<FaultKind> fault_kind_from(std::string_view name) {
+  for (std::size_t i = 0; i < table.size(); ++i)
+    if (table[i].name == name) return static_cast<FaultKind>(i);
+  return std::nullopt;
+}
+
+std::string_view advice(FaultKind kind) {
+  return table.at(static_cast<std::size_t>(kind)).advice;
+}
 
 void FaultLedger::add(FaultKind kind, std::string_view channel, long long count, double seconds) {
   if (count <= 0) return;
@@ -42,7 +54,8 @@ void FaultLedger::add(FaultKind kind, std::string_view channel, long long count,
 }
 
 void FaultLedger::merge(const FaultLedger& other) {
-  for (const Fault& fault : other.faults_) add(fault.kind, fault.channel, fault.count, fault.seconds);
+  for (const Fault& fault : other.faults_)
+    add(fault.kind, fault.channel, fault.count, fault.seconds);
 }
 
 long long FaultLedger::count(FaultKind kind) const {

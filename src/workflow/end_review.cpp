@@ -3,6 +3,7 @@
 #include <cmath>
 
 #include "clickwise/core/units.hpp"
+#include "clickwise/events/airtime.hpp"
 #include "clickwise/events/end_stops.hpp"
 #include "clickwise/events/hit_trains.hpp"
 
@@ -124,6 +125,12 @@ EndReview review_end(const bike::Bike& bike, const RideEnd& ride, const bike::Sp
   }
   review.apparent = apparent_of(bike, ride, damper);
   return review;
+}
+
+std::vector<run::Airtime> airtimes_of(const Ride& ride) {
+  std::vector<events::AirtimeEnd> ends;
+  for (const RideEnd& end : ride.ends) ends.push_back({&end.motion, end.counted});
+  return events::airtimes(ends);
 }
 
 advice::EndRide advice_view(const bike::Bike& bike, const RideEnd& ride, const EndReview& review,

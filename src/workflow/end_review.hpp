@@ -30,6 +30,9 @@ ChosenSplits choose_splits(const bike::End& end, const bike::Split& asked,
 EndReview review_end(const bike::Bike& bike, const RideEnd& ride, const bike::Split& asked,
                      const std::optional<damper::Damper>& damper);
 
+// Of both ends together, or of the one that was logged.
+std::vector<run::Airtime> airtimes_of(const Ride& ride);
+
 // The view of it that the advice takes; points into its arguments.
 advice::EndRide advice_view(const bike::Bike& bike, const RideEnd& ride, const EndReview& review,
                             const std::optional<damper::Damper>& damper);

@@ -1,64 +1,19 @@
 #include "clickwise/workflow/inspect.hpp"
 
 #include <algorithm>
-#include <cctype>
 #include <limits>
 
+#include "archived_facts.hpp"
+#include "clickwise/archive/run_archive.hpp"
 #include "clickwise/bike/bike_file.hpp"
 #include "clickwise/bike/starter.hpp"
 #include "clickwise/core/errors.hpp"
 #include "clickwise/workflow/ride.hpp"
+#include "starter_facts.hpp"
 
 namespace clickwise::workflow {
 
 namespace {
-
-bike::ColumnRef reference(const logs::ColumnFacts& column) {
-  return column.name.empty() ? bike::ColumnRef{"", column.number} : bike::ColumnRef{column.name, 0};
-}
-
-bool names_any(const std::string& name, const std::vector<std::string>& words) {
-  std::string small = name;
-  std::transform(small.begin(), small.end(), small.begin(),
-                 [](unsigned char letter) { return static_cast<char>(std::tolower(letter)); });
-  return std::any_of(words.begin(), words.end(), [&](const std::string& word) {
-    return small.find(word) != std::string::npos;
-  });
-}
-
-bool is_speed(const std::string& name) {
-  return names_any(name, {"speed", "kmh", "km_h", "km/h", "kph"});
-}
-
-bool is_travel(const std::string& name) {
-  return names_any(name, {"fork", "shock", "front", "rear", "travel", "susp", "pot", "adc"});
-}
-
-bike::StarterFacts starter_facts(const logs::LogFacts& facts) {
-  bike::StarterFacts starter;
-  starter.log_name = facts.name;
-  if (facts.time && facts.time->unit != "date") {
-    starter.time = reference(facts.columns[facts.time->column]);
-    starter.time_unit = facts.time->unit;
-  }
-  std::vector<bike::StarterColumn> others;
-  for (std::size_t i = 0; i < facts.columns.size(); ++i) {
-    const logs::ColumnFacts& column = facts.columns[i];
-    if (column.kind != logs::ColumnKind::number || (facts.time && facts.time->column == i))
-      continue;
-    if (is_speed(column.name)) {
-      if (!starter.speed) {
-        starter.speed = reference(column);
-        starter.speed_unit = names_any(column.name, {"m/s", "m_s", "mps"}) ? "m/s" : "km/h";
-      }
-      continue;
-    }
-    (is_travel(column.name) ? starter.candidates : others)
-        .push_back({reference(column), column.least, column.most});
-  }
-  starter.candidates.insert(starter.candidates.end(), others.begin(), others.end());
-  return starter;
-}
 
 InspectedEnd inspect_end(const bike::Bike& bike, const RideEnd& ride) {
   const bike::End& end = *bike.end(ride.name);
@@ -95,15 +50,20 @@ void inspect_motion(const std::string& log_path, const std::string& bike_path,
 
 Inspection inspect(const std::string& log_path, const std::string& bike_path) {
   Inspection inspection;
+  if (archive::is_archive(log_path)) {
+    inspection.facts = archived_facts(log_path);
+    inspect_motion(log_path, bike_path, inspection);
+    return inspection;
+  }
   if (bike_path.empty()) {
-    inspection.facts = logs::inspect_text_log(log_path);
+    inspection.facts = logs::inspect_log(log_path);
     inspection.faults = inspection.facts.faults;
     inspection.notes = inspection.facts.notes;
     inspection.starter_bike = bike::starter_bike(starter_facts(inspection.facts));
     return inspection;
   }
   const bike::Bike bike = bike::read_bike_file(bike_path);
-  inspection.facts = logs::inspect_text_log(log_path, &bike.log);
+  inspection.facts = logs::inspect_log(log_path, &bike.log);
   inspection.faults = inspection.facts.faults;
   inspection.notes = inspection.facts.notes;
   inspect_motion(log_path, bike_path, inspection);

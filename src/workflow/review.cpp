@@ -4,7 +4,6 @@
 
 #include "clickwise/bike/bike_file.hpp"
 #include "clickwise/core/parallel.hpp"
-#include "clickwise/events/airtime.hpp"
 #include "end_review.hpp"
 
 namespace clickwise::workflow {
@@ -31,12 +30,6 @@ FrontRear front_beside_rear(const Ride& ride, const std::vector<EndReview>& ends
   return both;
 }
 
-std::vector<run::Airtime> airtimes(const Ride& ride) {
-  std::vector<events::AirtimeEnd> ends;
-  for (const RideEnd& end : ride.ends) ends.push_back({&end.motion, end.counted});
-  return events::airtimes(ends);
-}
-
 }  // namespace
 
 Review review(const ReviewOptions& options) {
@@ -57,7 +50,7 @@ Review review(const ReviewOptions& options) {
     if (end.apparent && !end.apparent->problem.empty())
       result.notes.push_back(
           fmt::format("{} from the ride alone: {}", bike::part(end.name), end.apparent->problem));
-  result.airtimes = airtimes(ride);
+  result.airtimes = airtimes_of(ride);
   if (ride.ends.size() == 2 && ride.ends[0].riding_s > 0.0 && ride.ends[1].riding_s > 0.0)
     result.front_rear = front_beside_rear(ride, result.ends);
 

@@ -6,9 +6,11 @@
 #include <array>
 #include <utility>
 
+#include "archived_ride.hpp"
+#include "clickwise/archive/run_archive.hpp"
 #include "clickwise/bike/bike_file.hpp"
 #include "clickwise/core/parallel.hpp"
-#include "clickwise/logs/text_log.hpp"
+#include "clickwise/logs/log.hpp"
 #include "clickwise/motion/potentiometer.hpp"
 #include "clickwise/motion/riding.hpp"
 #include "clickwise/motion/sprung_accel.hpp"
@@ -62,22 +64,11 @@ std::vector<double> speed_on_base(const bike::Bike& bike, const run::Recording& 
   return speed;
 }
 
-double counted_seconds(const std::vector<std::uint8_t>& counted, double interval_s) {
-  std::size_t samples = 0;
-  for (const std::uint8_t one : counted) samples += one;
-  return static_cast<double>(samples) * interval_s;
-}
-
-void find_riding(const std::vector<double>& speed_m_s, Ride& ride) {
+void find_riding(Ride& ride) {
   std::vector<const run::Motion*> motions;
   for (const RideEnd& end : ride.ends) motions.push_back(&end.motion);
-  const motion::Riding riding = motion::riding(motions, speed_m_s);
-  ride.log.riding_s = riding.riding_s;
-  core::parallel_for(ride.ends.size(), [&](std::size_t i) {
-    RideEnd& end = ride.ends[i];
-    end.counted = riding.counted(end.motion);
-    end.riding_s = counted_seconds(end.counted, end.motion.time.interval_s());
-  });
+  ride.riding = motion::riding(motions, ride.speed_m_s).mask;
+  count_riding(ride);
 }
 
 constexpr double slowest_rate_hz = 10.0;    // below it no movement of a wheel can be followed
@@ -148,14 +139,16 @@ void refuse_without_ride(const Ride& ride, const std::string& path) {
   throw core::JobError({path}, found, "clickwise inspect shows what the log holds");
 }
 
-}  // namespace
-
-Ride load_ride(const RideOptions& options) {
+Ride ride_of_log(const RideOptions& options) {
+  if (options.bike_path.empty())
+    throw core::InputError({"command line"},
+                           "--bike is missing: only an archive brings its bike file along",
+                           "add --bike BIKE.toml; clickwise inspect LOG offers one to start from");
   Ride ride;
   ride.bike = bike::read_bike_file(options.bike_path);
   refuse_shared_columns(ride.bike);
   run::Recording recording =
-      logs::read_text_log(options.log_path, ride.bike.log, wanted_columns(ride.bike));
+      logs::read_log(options.log_path, ride.bike.log, wanted_columns(ride.bike));
   const motion::UniformClock clock = motion::uniform_clock(recording);
   refuse_impossible_rate(clock.base.rate_hz, ride.bike, options.log_path);
   ride.log.name = recording.name;
@@ -170,10 +163,9 @@ Ride load_ride(const RideOptions& options) {
   std::vector<motion::PotentiometerMotion> motions(names.size());
   motion::MotionOptions motion_options;
   motion_options.smooth_span_s = options.smooth_span_s;
-  std::vector<double> speed_m_s;
   core::parallel_for(names.size() + 1, [&](std::size_t i) {
     if (i == names.size())
-      speed_m_s = speed_on_base(ride.bike, recording, clock);
+      ride.speed_m_s = speed_on_base(ride.bike, recording, clock);
     else
       motions[i] =
           motion::from_potentiometer(recording, i, *ride.bike.end(names[i]), clock, motion_options);
@@ -185,9 +177,23 @@ Ride load_ride(const RideOptions& options) {
     ride.log.faults.merge(accel.faults);
     ride.ends.push_back(
         {names[i], std::move(motions[i].motion), {}, 0.0, std::move(accel.felt_m_s2)});
+    ride.ends.back().measured_by = ride.ends.back().motion.source;
     leave_out_nonsense(*ride.bike.end(names[i]), ride.ends.back(), ride.log.faults, ride.notes);
   }
-  find_riding(speed_m_s, ride);
+  archive::round_to_stored(ride.speed_m_s);
+  core::parallel_for(ride.ends.size(), [&](std::size_t i) {
+    archive::round_to_stored(ride.ends[i].motion);
+    archive::round_to_stored(ride.ends[i].felt_m_s2);
+  });
+  find_riding(ride);
+  return ride;
+}
+
+}  // namespace
+
+Ride load_ride(const RideOptions& options) {
+  Ride ride =
+      archive::is_archive(options.log_path) ? ride_of_archive(options) : ride_of_log(options);
   refuse_without_ride(ride, options.log_path);
   return ride;
 }

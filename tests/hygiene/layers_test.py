@@ -7,7 +7,8 @@ root = pathlib.Path(sys.argv[1])
 row = re.compile(r"^\| (\d+) \| `(\w+)` \|.*\| ([^|]+) \|$")
 include = re.compile(r'^\s*#\s*include\s*[<"]clickwise/(\w+)/')
 fenced = {  # third-party headers and the one module that may name them
-    "toml++": "io", "hdf5": "io", "H5": "io", "fftw3": "signal", "boost/json": "report",
+    "toml++": "io", "hdf5": "io", "H5": "io", "zlib": "io", "libdeflate": "io",
+    "boost/endian": "logs", "fftw3": "signal", "boost/json": "report",
     "boost/beast": "server", "CLI/": "cli",
 }
 

@@ -128,7 +128,9 @@ TEST_CASE("what is no log is refused in words", "[sniff]") {
   std::mt19937 random(5);
   std::string noise;
   for (int i = 0; i < 10000; ++i) noise += static_cast<char>(random());
-  CHECK_THAT(refused(noise), Contains("binary"));
+  CHECK_THAT(refused(noise), Contains("binary") && Contains("[log] packed = {"));
+  CHECK_THAT(refused("\x93NUMPY\x01\n1,2\n3,4\n"), Contains("NumPy") && Contains("HDF5 group"));
+  CHECK_THAT(refused(std::string("PK\x03\x04") + "zip\n"), Contains("zip"));
 }
 
 TEST_CASE("columns are found by name and by number", "[sniff]") {

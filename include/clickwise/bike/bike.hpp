@@ -33,11 +33,32 @@ struct SpeedColumn {
   double metres_per_second_per_unit = 1.0;
 };
 
-// `[log]`: exactly one of time and rate_hz is set.
+enum class FieldType { u8, i8, u16, i16, u32, i32, u64, i64, f32, f64 };
+
+std::size_t size_of(FieldType type);
+
+struct PackedField {
+  std::string name;
+  FieldType type = FieldType::u8;
+};
+
+// A log of frames without text: each the fields one after the other, without padding.
+struct PackedFrames {
+  bool big_endian = false;
+  std::size_t header_bytes = 0;  // in front of the first frame
+  std::vector<PackedField> frame;
+
+  std::size_t frame_bytes() const;
+};
+
+// `[log]`: exactly one of time and rate_hz is set, and at most one of packed and hdf5_group; with
+// neither the log is text.
 struct LogFormat {
   std::optional<TimeColumn> time;
   std::optional<double> rate_hz;
   std::optional<SpeedColumn> speed;
+  std::optional<PackedFrames> packed;
+  std::optional<std::string> hdf5_group;
 };
 
 // Contract section 3: force = rate (preload + travel).
@@ -113,6 +134,7 @@ struct DynoPoint {
 // Force-velocity points of a dynamometer, for the damper module to fit.
 struct DynoDamper {
   std::string file;  // as written; relative to the bike file's folder
+  std::string text;  // the file's, for the archive
   // Clicks and present setting of each adjuster (closed and open are 0): as the bike file counts
   // them, or else as the table's columns do.
   std::optional<Clicks> bleed_compression, valve_compression, bleed_rebound, valve_rebound;

@@ -25,7 +25,10 @@ struct ColumnFacts {
   double least = 0.0;       // of the numbers; 0 where there are none
   double most = 0.0;
   double resolution = 0.0;  // the step that all readings are multiples of; 0: none found
-  std::string example;      // the first cell that is filled
+  double mean = 0.0;        // of the numbers, and their standard deviation
+  double deviation = 0.0;
+  std::string example;  // the first cell that is filled
+  std::string units;    // as the file tells them; empty: it does not
 };
 
 // The column that is most likely the time.
@@ -39,8 +42,11 @@ struct TimeGuess {
 };
 
 struct LogFacts {
-  std::string name;   // the file's, without its folder
-  TextFormat format;  // its views into the text are empty
+  std::string name;                   // the file's, without its folder
+  TextFormat format;                  // its views into the text are empty
+  std::string hdf5_group;             // of the columns; empty: no HDF5
+  std::string binary_format;          // what a log is that is no text; empty for text
+  std::vector<std::string> contents;  // groups and data sets of an HDF5 file, a line each
   std::vector<ColumnFacts> columns;
   std::size_t rows = 0;
   std::size_t malformed_rows = 0;
@@ -56,9 +62,14 @@ struct LogFacts {
   std::vector<std::string> notes;
 };
 
-// Reads every column, in groups that keep the memory below some 256 MiB beside the mapped file.
-// With `format`, its time column or rate is taken instead of a guess. Throws core::InputError as
-// read_text_log does; a column that turns out to be no clock is only noted.
+// Of a log of any kind. With `format` its kind, and its time column or rate, are taken from there;
+// without, it may be text or HDF5, of which the group with the most channels is taken. Throws
+// core::InputError as read_log does; a column that turns out to be no clock is only noted.
+LogFacts inspect_log(const std::string& path, const bike::LogFormat* format = nullptr);
+
+// Of a text log. Reads every column, in groups that keep the memory below some 256 MiB beside the
+// mapped file. With `format`, its time column or rate is taken instead of a guess. Throws
+// core::InputError as read_text_log does; a column that turns out to be no clock is only noted.
 LogFacts inspect_text_log(const std::string& path, const bike::LogFormat* format = nullptr);
 
 }  // namespace clickwise::logs

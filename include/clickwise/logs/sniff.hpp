@@ -19,7 +19,7 @@ struct TextFormat {
   bool crlf = false;
   std::vector<std::string> names;  // one per column, trimmed, as UTF-8 (core/utf8.hpp);
                                    // all empty without a header
-  long long data_line = 1;         // where the first row stands, counted from 1
+  long long data_line = 1;         // where the first row stands, counted from 1; 0: no text
   std::string units_row;           // a line of units between header and data, as written
   int comment_lines = 0;           // in front of the data
   int preamble_lines = 0;          // other lines in front of header and data

@@ -1,6 +1,7 @@
 // Damage found in a log: one ledger, so that nothing is dropped without being counted.
 #pragma once
 
+#include <optional>
 #include <string>
 #include <string_view>
 #include <vector>
@@ -11,6 +12,7 @@ namespace clickwise::run {
 enum class FaultKind { gap, time_restart, spike, stuck, saturated, missing, truncated };
 
 std::string_view to_string(FaultKind kind);
+std::optional<FaultKind> fault_kind_from(std::string_view name);
 
 // What a user can do about it, one sentence.
 std::string_view advice(FaultKind kind);
@@ -24,14 +26,14 @@ struct Fault {
 
 // Adds to the entry of the same kind and channel, or makes one. Entries with count 0 never appear.
 class FaultLedger {
- public:
+public:
   void add(FaultKind kind, std::string_view channel, long long count, double seconds);
   void merge(const FaultLedger& other);
   const std::vector<Fault>& faults() const { return faults_; }
   bool empty() const { return faults_.empty(); }
   long long count(FaultKind kind) const;
 
- private:
+private:
   std::vector<Fault> faults_;
 };
 

@@ -25,26 +25,32 @@ struct LogSummary {
 struct RideEnd {
   bike::EndName name = bike::EndName::front;
   run::Motion motion;
-  std::vector<std::uint8_t> counted;   // riding and valid
-  double riding_s = 0.0;               // of this end
+  std::vector<std::uint8_t> counted = {};  // riding and valid
+  double riding_s = 0.0;                   // of this end
   std::vector<double> felt_m_s2 = {};  // sprung side's accelerometer, NaN where not known; or empty
+  run::Source measured_by = run::Source::potentiometer;  // also where the motion's is an archive
 };
 
 struct Ride {
   bike::Bike bike;
   LogSummary log;
-  std::vector<RideEnd> ends;       // front first; one or two
-  std::vector<std::string> notes;  // what was guessed, what looked odd
+  std::vector<RideEnd> ends;         // front first; one or two, on one time base
+  std::vector<std::uint8_t> riding;  // one per sample of the base
+  std::vector<double> speed_m_s;     // ridden speed on the base, NaN: none; empty: not logged
+  std::vector<std::string> notes;    // what was guessed, what looked odd
 };
 
 struct RideOptions {
-  std::string log_path;
-  std::string bike_path;
+  std::string log_path;                 // a log, or the archive of a run
+  std::string bike_path;                // may be empty for an archive, which brings its own
   std::optional<double> smooth_span_s;  // a filter span chosen by hand
 };
 
-// Throws core::InputError for files that cannot be read, core::JobError when the log holds no
-// usable ride.
+// Motions and speeds are rounded to what an archive keeps (archive::round_to_stored), so that a log
+// and its archive give the same ride, but for the motions' source. A bike file given with an
+// archive rules over the stored one; a note tells where travel was made by another stroke or
+// sensor. Throws core::InputError for files that cannot be read, a bike file that is missing, or a
+// span asked of an archive; core::JobError when the log holds no usable ride.
 Ride load_ride(const RideOptions& options);
 
 }  // namespace clickwise::workflow
