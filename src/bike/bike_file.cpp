@@ -29,8 +29,10 @@ void check_schema(const io::TomlTable& root) {
 }
 
 void read_masses(const io::TomlTable& root, Bike& bike) {
-  if (const auto rider = root.table("rider"))
+  if (const auto rider = root.table("rider")) {
     bike.rider_mass_kg = read_either(*rider, mass("mass_kg", "mass_lb", 10.0, 300.0, 78.0));
+    if (const auto hand = rider->table("hand_accel")) bike.hand_accel = read_hand_accel(*hand);
+  }
   if (const auto chassis = root.table("chassis")) {
     bike.chassis_mass_kg = read_either(*chassis, mass("mass_kg", "mass_lb", 2.0, 300.0, 16.2));
     bike.front_share = chassis->number(

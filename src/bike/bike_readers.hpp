@@ -26,10 +26,16 @@ double need_either(const io::TomlTable& table, const TwoUnits& quantity);
 TwoUnits mass(std::string_view key, std::string_view trade_key, double least_kg, double most_kg,
               double example_kg);
 
+constexpr long long most_columns = 100000;
+
 ColumnRef read_column(const io::TomlTable& table);
 LogFormat read_log(const io::TomlTable& root);
 Aims read_aims(const io::TomlTable& root);
-Potentiometer read_sensor(const io::TomlTable& end);
+// Reads the end's sensor: a potentiometer, an IMU pair, or a potentiometer with an `imu` table.
+void read_sensor(const io::TomlTable& table, End& end);
+ImuPair read_imu_pair(const io::TomlTable& table);
+Accelerometer read_hand_accel(const io::TomlTable& table);
+double read_accel_unit(const io::TomlTable& table, const char* key);  // m/s^2 per "g" or "m/s2"
 Spring read_spring(const io::TomlTable& spring, double stroke_m);
 Damper read_damper(const io::TomlTable& damper, const FilesBeside& beside);
 

@@ -107,27 +107,26 @@ void read_optional_parts(const io::TomlTable& table, const FilesBeside& beside, 
 
 }  // namespace
 
-Potentiometer read_sensor(const io::TomlTable& end) {
-  const io::TomlTable sensor = end.need_table(
-      "sensor", "[" + end.name() +
+void read_sensor(const io::TomlTable& table, End& end) {
+  const io::TomlTable sensor = table.need_table(
+      "sensor", "[" + table.name() +
                     ".sensor] with kind = \"potentiometer\", column = \"fork_adc\", calibration = "
                     "[[210, 0.0], [3850, 170.0]]");
-  if (sensor.need_choice("kind", {"potentiometer", "imu_pair"}) == "imu_pair")
-    sensor.find("kind")->refuse("IMU pairs are not read by this version",
-                                "log the travel with a potentiometer and write kind = "
-                                "\"potentiometer\"");
-  Potentiometer result;
-  result.column = read_column(sensor);
-  result.travel_m =
+  if (sensor.need_choice("kind", {"potentiometer", "imu_pair"}) == "imu_pair") {
+    end.imu = read_imu_pair(sensor);
+    return;
+  }
+  end.sensor.column = read_column(sensor);
+  end.sensor.travel_m =
       read_calibration(sensor.need("calibration", "calibration = [[210, 0.0], [3850, 170.0]]"));
-  return result;
+  if (const auto imu = sensor.table("imu")) end.imu = read_imu_pair(*imu);
 }
 
 End read_end(const io::TomlTable& table, const FilesBeside& beside) {
   End end;
   end.stroke_m = core::from_mm(
       table.need_number("stroke_mm", {.least = 10.0, .most = 500.0, .example = 170.0}));
-  end.sensor = read_sensor(table);
+  read_sensor(table, end);
   end.unsprung_mass_kg =
       read_either(table, mass("unsprung_mass_kg", "unsprung_mass_lb", 0.1, 30.0, 2.9));
   end.friction_n =

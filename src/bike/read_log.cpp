@@ -75,10 +75,8 @@ SpeedColumn read_speed(const io::TomlTable& speed) {
 ColumnRef read_column(const io::TomlTable& table) {
   const io::TomlValue column = table.need("column", "column = \"name of the column\"");
   if (column.kind() == io::TomlKind::text) return {column.text(), 0};
-  if (column.kind() == io::TomlKind::integer) {
-    constexpr long long most_columns = 100000;
+  if (column.kind() == io::TomlKind::integer)
     return {"", static_cast<int>(column.integer(1, most_columns))};
-  }
   column.refuse("must be a header's name in quotes, or a column's number counted from 1",
                 "write for example column = \"fork_adc\" or column = 2");
 }

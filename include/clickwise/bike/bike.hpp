@@ -8,20 +8,12 @@
 #include <vector>
 
 #include "clickwise/bike/adjuster.hpp"
+#include "clickwise/bike/column.hpp"
+#include "clickwise/bike/imu.hpp"
 #include "clickwise/core/errors.hpp"
 #include "clickwise/core/polyline.hpp"
 
 namespace clickwise::bike {
-
-// A column of a log: by its header's name, or by number counted from 1 (name empty).
-struct ColumnRef {
-  std::string name;
-  int number = 0;
-
-  // The name, or "column 3".
-  std::string label() const;
-  bool operator==(const ColumnRef&) const = default;
-};
 
 struct TimeColumn {
   ColumnRef column;
@@ -182,7 +174,8 @@ struct Split {
   std::optional<double> rebound_m_s;
 };
 
-// One end. Only stroke and sensor are required; what else is missing stays empty.
+// One end. Only stroke and sensor are required; what else is missing stays empty. The sensor is a
+// potentiometer, an IMU pair, or both.
 struct End {
   double stroke_m = 0.0;
   std::optional<double> unsprung_mass_kg;
@@ -191,11 +184,14 @@ struct End {
   core::Polyline ratio = core::Polyline::constant(1.0);  // d wheel / d shaft over shaft travel (m)
   double bottom_out_within_m = 4e-3;
   Split split;
-  Potentiometer sensor;
+  Potentiometer sensor;  // without a column where has_potentiometer() is false
+  std::optional<ImuPair> imu;
   std::optional<SprungAccel> sprung_accel;
   std::optional<Spring> spring;
   std::optional<Damper> damper;
   core::Place damper_place;  // of its table, for messages
+
+  bool has_potentiometer() const { return sensor.column != ColumnRef{}; }
 };
 
 // Aims of the advice, settable in `[aims]`; each has a default from common practice, no source.
@@ -218,6 +214,7 @@ struct Bike {
   std::string name;
   LogFormat log;
   std::optional<double> rider_mass_kg;
+  std::optional<Accelerometer> hand_accel;  // on the handlebar
   std::optional<double> chassis_mass_kg;
   std::optional<double> front_share;
   std::optional<double> wheelbase_m;

@@ -20,6 +20,8 @@ inline constexpr double pascals_per_psi =
     newtons_per_pound_force / (metres_per_inch * metres_per_inch);
 inline constexpr double newtons_per_metre_per_lb_in = newtons_per_pound_force / metres_per_inch;
 
+inline constexpr double radians_per_degree = 0.017453292519943295;
+
 inline constexpr double standard_atmosphere_pa = 101325.0;  // 10th CGPM 1954
 
 constexpr double from_mm(double mm) { return mm * metres_per_mm; }
