@@ -77,8 +77,8 @@ void read_swinging(const io::TomlTable& table, ImuPair& pair) {
     table.refuse("how far the wheel goes with the link is missing",
                  "add arm_mm = 430 (wheel travel per radian) or swing = [[angle_deg, wheel_mm], "
                  "...]");
-  pair.swing_m = swing ? read_swing(*swing)
-                       : core::Polyline({0.0, 1.0}, {0.0, core::from_mm(*arm)});
+  pair.swing_m =
+      swing ? read_swing(*swing) : core::Polyline({0.0, 1.0}, {0.0, core::from_mm(*arm)});
 }
 
 void read_sliding(const io::TomlTable& table, ImuPair& pair) {
@@ -112,9 +112,9 @@ ImuPair read_imu_pair(const io::TomlTable& table) {
   else
     read_sliding(table, pair);
   if (pair.upper.gyro)
-    pair.radians_per_second_per_unit =
-        table.need_choice("gyro_unit", {"deg/s", "rad/s"}) == "deg/s" ? core::radians_per_degree
-                                                                       : 1.0;
+    pair.radians_per_second_per_unit = table.need_choice("gyro_unit", {"deg/s", "rad/s"}) == "deg/s"
+                                           ? core::radians_per_degree
+                                           : 1.0;
   if (swings && pair.upper.accel) read_accel_unit(table, "accel_unit");
   return pair;
 }

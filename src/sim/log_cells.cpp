@@ -52,6 +52,9 @@ int decimals_of(ColumnKind kind, const LoggerPlan& plan) {
       return plan.sprung_accel.decimals;
     case ColumnKind::extra:
       return plan.extra_decimals;
+    case ColumnKind::imu:
+    case ColumnKind::hand:
+      return plan.imu.decimals;
     default:
       return 0;
   }
@@ -60,10 +63,12 @@ int decimals_of(ColumnKind kind, const LoggerPlan& plan) {
 }  // namespace
 
 LogCells::LogCells(const bike::Bike& bike, const LoggerPlan& plan, const Truth& truth,
-                   const LogColumn& column, std::uint64_t stream)
+                   const ImuUnits& units, const LogColumn& column, std::uint64_t stream)
     : bike_(bike), plan_(plan), truth_(truth), kind_(column.kind), chance_(plan.seed, stream) {
   if (kind_ == ColumnKind::front) readings_ = readings_over_travel(bike.front->sensor);
   if (kind_ == ColumnKind::rear) readings_ = readings_over_travel(bike.rear->sensor);
+  if (kind_ == ColumnKind::imu || kind_ == ColumnKind::hand)
+    imu_.emplace(bike, plan, truth, units, column, chance_);
   std::copy_if(plan.faults.begin(), plan.faults.end(), std::back_inserter(faults_),
                [&](const PlannedFault& fault) { return fault.channel == column.name; });
   struck_.assign(faults_.size(), false);
@@ -81,7 +86,8 @@ double LogCells::felt_reading(bike::EndName name, double t_s) {
          bike_.end(name)->sprung_accel->m_s2_per_unit();
 }
 
-double LogCells::reading(const LogRow& row) {
+std::optional<double> LogCells::reading(const LogRow& row) {
+  if (imu_) return imu_->reading(row.sampled_s, chance_);
   if (kind_ == ColumnKind::front_accel) return felt_reading(bike::EndName::front, row.sampled_s);
   if (kind_ == ColumnKind::rear_accel) return felt_reading(bike::EndName::rear, row.sampled_s);
   if (kind_ == ColumnKind::speed) {
@@ -109,7 +115,7 @@ double LogCells::full_reading() const {
 
 std::optional<double> LogCells::damaged(double reading, double at_s) {
   const double full = full_reading();
-  const bool converted = decimals_of(kind_, plan_) == 0;
+  const bool converted = decimals_of(kind_, plan_) == 0 && !imu_;
   double value = converted ? std::clamp(std::round(reading), 0.0, full) : reading;
   bool stuck = false;
   for (std::size_t i = 0; i < faults_.size(); ++i) {
@@ -136,7 +142,9 @@ void LogCells::append(std::string& text, const LogRow& row) {
     append_number(text, stamp, decimals_of(kind_, plan_));
     return;
   }
-  const auto value = damaged(reading(row), row.sampled_s);
+  const auto read = reading(row);
+  if (!read) return;
+  const auto value = damaged(*read, row.sampled_s);
   if (!value) return;
   append_number(text, *value, decimals_of(kind_, plan_));
 }

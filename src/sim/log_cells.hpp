@@ -8,6 +8,7 @@
 
 #include "clickwise/sim/logger.hpp"
 #include "clickwise/sim/random.hpp"
+#include "imu_cells.hpp"
 #include "log_layout.hpp"
 
 namespace clickwise::sim {
@@ -22,13 +23,13 @@ class LogCells {
 public:
   // The arguments must outlive this object.
   LogCells(const bike::Bike& bike, const LoggerPlan& plan, const Truth& truth,
-           const LogColumn& column, std::uint64_t stream);
+           const ImuUnits& units, const LogColumn& column, std::uint64_t stream);
 
   // Appends the cell's text; nothing while the reading is missing.
   void append(std::string& text, const LogRow& row);
 
 private:
-  double reading(const LogRow& row);
+  std::optional<double> reading(const LogRow& row);
   double felt_reading(bike::EndName name, double t_s);
   double full_reading() const;
   std::optional<double> damaged(double reading, double at_s);
@@ -43,6 +44,7 @@ private:
   std::optional<double> stuck_;  // the reading that is held
   Random chance_;
   double wander_ = 0.0;
+  std::optional<ImuChannel> imu_;
 };
 
 }  // namespace clickwise::sim

@@ -9,11 +9,20 @@
 
 namespace clickwise::sim {
 
-enum class ColumnKind { time, front, rear, speed, front_accel, rear_accel, extra };
+enum class ColumnKind { time, front, rear, speed, front_accel, rear_accel, imu, hand, extra };
+
+// Which reading of which unit; `component` is 0 to 2.
+struct ImuColumn {
+  bike::EndName end = bike::EndName::front;
+  bool lower = false;
+  bool gyro = false;
+  std::size_t component = 0;
+};
 
 struct LogColumn {
   std::string name;
   ColumnKind kind = ColumnKind::extra;
+  ImuColumn imu = {};  // of the kinds imu and hand
 };
 
 struct LogLayout {

@@ -119,9 +119,10 @@ void write_log(const bike::Bike& bike, const LoggerPlan& plan, const Truth& trut
   if (truth.samples() < 2)
     throw core::JobError({bike.file, 0, 0}, "the ride is shorter than two samples",
                          "make it longer");
+  const ImuUnits units(bike, plan, truth);
   std::vector<LogCells> cells;
   for (std::size_t c = 0; c < layout.columns.size(); ++c)
-    cells.emplace_back(bike, plan, truth, layout.columns[c], first_column_stream + c);
+    cells.emplace_back(bike, plan, truth, units, layout.columns[c], first_column_stream + c);
 
   std::string text;
   if (layout.header) append_header(text, layout);

@@ -56,6 +56,29 @@ SprungAccelPlan read_accel(const io::TomlTable& table) {
   return plan;
 }
 
+double at_least_0(const io::TomlTable& table, const char* key, double otherwise, double most) {
+  return table.number_or(key, otherwise, {.least = 0.0, .most = most, .example = otherwise});
+}
+
+ImuPlan read_imu(const io::TomlTable& table) {
+  ImuPlan plan;
+  plan.noise_ug_sqrt_hz = at_least_0(table, "noise_ug_sqrt_hz", plan.noise_ug_sqrt_hz, 1e5);
+  plan.gyro_noise_deg_s_sqrt_hz =
+      at_least_0(table, "gyro_noise_deg_s_sqrt_hz", plan.gyro_noise_deg_s_sqrt_hz, 10.0);
+  plan.bias_mg = at_least_0(table, "bias_mg", plan.bias_mg, 1000.0);
+  plan.gyro_bias_deg_s = at_least_0(table, "gyro_bias_deg_s", plan.gyro_bias_deg_s, 50.0);
+  plan.range_g = table.number_or("range_g", plan.range_g, {.least = 1.0, .most = 5000.0});
+  plan.gyro_range_deg_s =
+      table.number_or("gyro_range_deg_s", plan.gyro_range_deg_s, {.least = 10.0, .most = 1e5});
+  plan.mounting_deg = at_least_0(table, "mounting_deg", plan.mounting_deg, 45.0);
+  plan.rate_hz = at_least_0(table, "rate_hz", plan.rate_hz, 2e4);
+  plan.lag_ms = at_least_0(table, "lag_ms", plan.lag_ms, 1000.0);
+  plan.lower_drift_ppm =
+      table.number_or("lower_drift_ppm", 0.0, {.least = -1e4, .most = 1e4, .example = 200.0});
+  plan.decimals = static_cast<int>(table.integer("decimals", 0, 9).value_or(plan.decimals));
+  return plan;
+}
+
 }  // namespace
 
 LoggerPlan read_logger(const io::TomlTable& logger) {
@@ -73,6 +96,7 @@ LoggerPlan read_logger(const io::TomlTable& logger) {
   if (const auto accel = logger.table("accel")) plan.sprung_accel = read_accel(*accel);
   plan.extra_columns = read_names(logger, "extra_columns");
   plan.extra_decimals = static_cast<int>(logger.integer("extra_decimals", 0, 9).value_or(0));
+  if (const auto imu = logger.table("imu")) plan.imu = read_imu(*imu);
   for (const auto& fault : logger.tables("fault")) plan.faults.push_back(read_fault(fault));
   return plan;
 }

@@ -30,6 +30,21 @@ struct SprungAccelPlan {
   int decimals = 4;       // of the readings, in the bike file's unit
 };
 
+// The inertial units of the log.
+struct ImuPlan {
+  double noise_ug_sqrt_hz = 150.0;  // one-sided density; IEEE Std 952-1997
+  double gyro_noise_deg_s_sqrt_hz = 0.005;
+  double bias_mg = 0.0;  // of every axis, either way
+  double gyro_bias_deg_s = 0.0;
+  double range_g = 16.0;  // clipped beyond it
+  double gyro_range_deg_s = 2000.0;
+  double mounting_deg = 0.0;     // each unit is turned by it about an axis of its own
+  double rate_hz = 0.0;          // 0: the logger's; slower: cells between stay empty
+  double lag_ms = 0.0;           // the units' samples are so much older than their row
+  double lower_drift_ppm = 0.0;  // of the lower units' clock
+  int decimals = 4;              // in the bike file's unit
+};
+
 struct LoggerPlan {
   double rate_hz = 1000.0;
   int adc_bits = 12;
@@ -41,6 +56,7 @@ struct LoggerPlan {
   SprungAccelPlan sprung_accel;
   std::vector<std::string> extra_columns;  // further readings that nobody asked for: slow noise
   int extra_decimals = 0;                  // of the further readings
+  ImuPlan imu;
   std::vector<PlannedFault> faults;
   std::uint64_t seed = 1;
 };
