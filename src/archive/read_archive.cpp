@@ -140,6 +140,8 @@ std::optional<EndOfRun> read_end(const Reader& reader, const std::string& group,
   motion.reading_noise_m = in_mm("reading_noise_mm");
   motion.cutoff_hz = reader.number_attribute(group, "cutoff_hz");
   motion.smoothing = reader.text_attribute(group, "smoothing");
+  motion.travel_withheld = reader.file().text_attribute(group, "travel_withheld").value_or("");
+  motion.travel_known = motion.travel_withheld.empty();
   return end;
 }
 

@@ -105,6 +105,7 @@ void write_end(io::Hdf5Writer& file, const std::string& group, const EndOfRun& e
   file.attribute(group, "reading_noise_mm", double{stored_mm(motion.reading_noise_m)});
   file.attribute(group, "cutoff_hz", motion.cutoff_hz);
   file.attribute(group, "smoothing", motion.smoothing);
+  if (!motion.travel_known) file.attribute(group, "travel_withheld", motion.travel_withheld);
 }
 
 void write_stops(io::Hdf5Writer& file, const std::string& group,

@@ -99,7 +99,8 @@ std::string click_map_json(const workflow::ClickMap& map) {
         {"first", cell.first}, {"second", cell.second}, {"holds_aims", cell.holds_aims}};
     for (std::size_t m = 0; m < sim::metrics; ++m) {
       const auto metric = static_cast<sim::Metric>(m);
-      object[sim::to_string(metric)] = number(sim::units_per_si(metric) * cell.figures.value(metric));
+      object[sim::to_string(metric)] =
+          number(sim::units_per_si(metric) * cell.figures.value(metric));
     }
     cells.push_back(std::move(object));
   }

@@ -163,20 +163,25 @@ std::string bottom_out_table(const workflow::EndReview& end) {
   return heading + (rows.empty() ? "" : table({"at, s", "met at, mm/s", "deep, mm"}, rows));
 }
 
+std::string travel_words(const workflow::EndReview& end) {
+  if (!end.travel_withheld.empty()) return escaped("Of travel: " + end.travel_withheld + ".");
+  return fmt::format("Travel: mean {:.1f}, p95 {:.1f}, most {:.1f} of {:.0f} mm.",
+                     to_mm(end.travel.mean_m), to_mm(end.travel.p95_m), to_mm(end.travel.max_m),
+                     to_mm(end.stroke_m));
+}
+
 std::string end_section(const workflow::EndReview& end) {
   const std::string body =
       table({"direction", "split, mm/s", "low, s", "high, s", "high, %", "low, m", "high, m",
              "low, J", "high, J", "p50, mm/s", "p95, mm/s", "max, mm/s"},
             {band_row("compression", end.bands.compression),
              band_row("rebound", end.bands.rebound)}) +
-      fmt::format(
-          "<p>Split: compression {}, rebound {}. Travel: mean {:.1f}, p95 {:.1f}, most "
-          "{:.1f} of {:.0f} mm. Velocity noise {:.1f} mm/s.</p>\n",
-          split_source_words(end.compression_split_source),
-          split_source_words(end.rebound_split_source), to_mm(end.travel.mean_m),
-          to_mm(end.travel.p95_m), to_mm(end.travel.max_m), to_mm(end.stroke_m),
-          to_mm(end.velocity_noise_m_s)) +
-      adjuster_table(end) + apparent_section(end) + bottom_out_table(end);
+      fmt::format("<p>Split: compression {}, rebound {}. {} Velocity noise {:.1f} mm/s.</p>\n",
+                  split_source_words(end.compression_split_source),
+                  split_source_words(end.rebound_split_source), travel_words(end),
+                  to_mm(end.velocity_noise_m_s)) +
+      adjuster_table(end) + apparent_section(end) +
+      (end.travel_withheld.empty() ? bottom_out_table(end) : "");
   return section(part_words(end.name, true), body);
 }
 
@@ -198,6 +203,7 @@ std::string review_html(const workflow::Review& review) {
                   duration_words(review.log.duration_s)) +
       first_section(review.advice);
   for (const workflow::EndReview& end : review.ends) html += end_section(end);
+  html += listed_section("Vibration at the hands", hand_arm_words(review.hand_arm));
   html += listed_section("What the log was worth", fault_words(review.log.faults));
   html += listed_section("Notes", review.notes);
   html += listed_section("Left out, and what would bring it", review.missing);

@@ -131,7 +131,7 @@ json::object adjusters_json(const std::vector<workflow::AdjusterReview>& adjuste
   return object;
 }
 
-json::object end_json(const workflow::EndReview& end) {
+json::object known_end_json(const workflow::EndReview& end) {
   json::object object{
       {"source", text(source_name(end.source))},
       {"stroke_mm", number(to_mm(end.stroke_m))},
@@ -150,6 +150,23 @@ json::object end_json(const workflow::EndReview& end) {
       {"adjusters", adjusters_json(end.adjusters)}};
   if (end.apparent) object["apparent_damper"] = apparent_json(*end.apparent);
   return object;
+}
+
+json::object end_json(const workflow::EndReview& end) {
+  json::object object = known_end_json(end);
+  if (end.travel_withheld.empty()) return object;
+  for (const char* key : {"travel", "bottom_outs", "top_outs", "hit_trains"}) object[key] = nullptr;
+  object["travel_withheld"] = text(end.travel_withheld);
+  return object;
+}
+
+json::value hand_arm_json(const std::optional<workflow::HandArm>& found) {
+  if (!found) return nullptr;
+  return json::object{{"weighted_rms_m_s2", number(found->weighted_rms_m_s2)},
+                      {"daily_exposure_m_s2", number(found->daily_exposure_m_s2)},
+                      {"action_m_s2", workflow::hand_arm_action_m_s2},
+                      {"limit_m_s2", workflow::hand_arm_limit_m_s2},
+                      {"highest_frequency_hz", number(0.5 * found->rate_hz)}};
 }
 
 json::object symptom_json(const advice::Symptom& symptom) {
@@ -233,6 +250,7 @@ std::string review_json(const workflow::Review& review) {
                           {"log", log_json(review.log)},
                           {"ends", std::move(ends)},
                           {"front_rear", front_rear_json(review.front_rear)},
+                          {"hand_arm", hand_arm_json(review.hand_arm)},
                           {"airtimes", airtimes_json(review.airtimes)},
                           {"advice", std::move(steps)},
                           {"leave_it", text(review.advice.leave_it)},

@@ -180,8 +180,13 @@ std::string review_text(const workflow::Review& review, const TextStyle& style) 
       continue;
     }
     write_bands(out, end);
-    write_travel(out, end);
-    write_events(out, end);
+    if (end.travel_withheld.empty()) {
+      write_travel(out, end);
+      write_events(out, end);
+    } else {
+      out.line("  {}", end.travel_withheld);
+      out.line("  so no bottom-outs, top-outs and hit trains are counted");
+    }
     write_adjusters(out, end);
     if (end.apparent)
       for (const std::string& words : apparent_words(*end.apparent)) out.line("  {}", words);
@@ -196,6 +201,7 @@ std::string review_text(const workflow::Review& review, const TextStyle& style) 
         review.front_rear->compression_p95_ratio, review.front_rear->rebound_p95_ratio,
         review.airtimes.size());
   }
+  write_list(out, "Vibration at the hands", hand_arm_words(review.hand_arm));
   write_list(out, "What the log was worth", fault_words(review.log.faults));
   write_list(out, "Notes", review.notes);
   write_list(out, "Left out, and what would bring it", review.missing);

@@ -106,4 +106,20 @@ std::vector<std::string> fault_words(const run::FaultLedger& faults) {
   return sentences;
 }
 
+std::vector<std::string> hand_arm_words(const std::optional<workflow::HandArm>& found) {
+  if (!found) return {};
+  const double a8 = found->daily_exposure_m_s2;
+  return {fmt::format("{:.1f} m/s2 rms, weighted as in ISO 5349-1, up to {:.0f} Hz",
+                      found->weighted_rms_m_s2, 0.5 * found->rate_hz),
+          fmt::format("A(8) of this run alone: {:.2f} m/s2, {} (EU action value {:.1f}, limit "
+                      "{:.1f}); a day's runs add by their squares",
+                      a8,
+                      a8 > workflow::hand_arm_limit_m_s2    ? "above the limit value"
+                      : a8 > workflow::hand_arm_action_m_s2 ? "above the action value"
+                                                            : "below the action value",
+                      workflow::hand_arm_action_m_s2, workflow::hand_arm_limit_m_s2),
+          "For information: the values are made for tools held at work; one unit on the bar is not "
+          "the hand, and this is no medical advice."};
+}
+
 }  // namespace clickwise::report

@@ -37,4 +37,7 @@ std::string split_source_words(workflow::SplitSource source);
 // One sentence a fault: "gap: 2 on the clock, 1.2 s left out; ..."
 std::vector<std::string> fault_words(const run::FaultLedger& faults);
 
+// Vibration at the hands, as information; empty without.
+std::vector<std::string> hand_arm_words(const std::optional<workflow::HandArm>& found);
+
 }  // namespace clickwise::report

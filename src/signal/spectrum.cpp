@@ -12,25 +12,21 @@
 #include <numbers>
 #include <stdexcept>
 
+#include "fft_planner.hpp"
+
 namespace clickwise::signal {
 
 namespace {
-
-// FFTW's planner is not thread-safe; running a plan is.
-std::mutex& planner() {
-  static std::mutex mutex;
-  return mutex;
-}
 
 class RealTransform {
 public:
   explicit RealTransform(std::size_t n)
       : input_(fftw_alloc_real(n)), output_(fftw_alloc_complex(n / 2 + 1)) {
-    const std::lock_guard lock(planner());
+    const std::lock_guard lock(fft_planner());
     plan_ = fftw_plan_dft_r2c_1d(static_cast<int>(n), input_.get(), output_.get(), FFTW_ESTIMATE);
   }
   ~RealTransform() {
-    const std::lock_guard lock(planner());
+    const std::lock_guard lock(fft_planner());
     fftw_destroy_plan(plan_);
   }
   RealTransform(const RealTransform&) = delete;

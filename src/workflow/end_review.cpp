@@ -67,6 +67,22 @@ std::optional<sim::ApparentDamper> apparent_of(const bike::Bike& bike, const Rid
                                      .cutoff_hz = motion.cutoff_hz});
 }
 
+// Everything that hangs on travel.
+void review_travel(const bike::Bike& bike, const RideEnd& ride, EndReview& review) {
+  const bike::End& end = *bike.end(ride.name);
+  const run::Motion& motion = ride.motion;
+  review.travel = bands::travel_use(motion, ride.counted, end.stroke_m);
+  review.bottom_outs = events::bottom_outs(
+      motion, ride.counted,
+      {end.stroke_m, end.bottom_out_within_m, moving_mass_kg(bike, end, ride.name, end.stroke_m)});
+  events::TopOutOptions top_out;
+  top_out.moving_mass_kg = moving_mass_kg(bike, end, ride.name, 0.0);
+  review.top_outs = events::top_outs(motion, ride.counted, top_out);
+  events::HitTrainOptions train;
+  train.stroke_m = end.stroke_m;
+  review.trains = events::hit_trains(motion, ride.counted, train);
+}
+
 }  // namespace
 
 std::optional<damper::Damper> damper_of(const bike::Bike& bike, bike::EndName name) {
@@ -109,27 +125,22 @@ EndReview review_end(const bike::Bike& bike, const RideEnd& ride, const bike::Sp
                                        {compression.speed_m_s, rebound.speed_m_s}, force_n);
   review.compression_split_source = compression.source;
   review.rebound_split_source = rebound.source;
-  review.travel = bands::travel_use(motion, ride.counted, end.stroke_m);
-  review.bottom_outs = events::bottom_outs(
-      motion, ride.counted,
-      {end.stroke_m, end.bottom_out_within_m, moving_mass_kg(bike, end, ride.name, end.stroke_m)});
-  events::TopOutOptions top_out;
-  top_out.moving_mass_kg = moving_mass_kg(bike, end, ride.name, 0.0);
-  review.top_outs = events::top_outs(motion, ride.counted, top_out);
-  events::HitTrainOptions train;
-  train.stroke_m = end.stroke_m;
-  review.trains = events::hit_trains(motion, ride.counted, train);
   if (damper) {
     review.adjusters = review_adjusters(*damper, review.bands);
     review.damper_assumed = damper->assumed();
   }
+  review.travel_withheld = motion.travel_withheld;
+  if (!motion.travel_known) return review;
+  review_travel(bike, ride, review);
   review.apparent = apparent_of(bike, ride, damper);
   return review;
 }
 
 std::vector<run::Airtime> airtimes_of(const Ride& ride) {
   std::vector<events::AirtimeEnd> ends;
-  for (const RideEnd& end : ride.ends) ends.push_back({&end.motion, end.counted});
+  for (const RideEnd& end : ride.ends)
+    if (end.motion.travel_known) ends.push_back({&end.motion, end.counted});
+  if (ends.empty()) return {};
   return events::airtimes(ends);
 }
 

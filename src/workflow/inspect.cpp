@@ -17,7 +17,7 @@ namespace {
 
 InspectedEnd inspect_end(const bike::Bike& bike, const RideEnd& ride) {
   const bike::End& end = *bike.end(ride.name);
-  InspectedEnd result{ride.name, end.sensor.column.label()};
+  InspectedEnd result{ride.name, end.has_potentiometer() ? end.sensor.column.label() : "IMU pair"};
   result.stroke_m = end.stroke_m;
   result.reading_noise_m = ride.motion.reading_noise_m;
   result.least_m = std::numeric_limits<double>::infinity();
@@ -30,7 +30,8 @@ InspectedEnd inspect_end(const bike::Bike& bike, const RideEnd& ride) {
     result.most_m = std::max(result.most_m, ride.motion.travel_m[i]);
   }
   result.usable_s = static_cast<double>(usable) * ride.motion.time.interval_s();
-  if (usable == 0) result.least_m = result.most_m = std::numeric_limits<double>::quiet_NaN();
+  if (usable == 0 || !ride.motion.travel_known)
+    result.least_m = result.most_m = std::numeric_limits<double>::quiet_NaN();
   return result;
 }
 

@@ -57,6 +57,11 @@ Replay replay(const ReplayOptions& options) {
   result.settings = apply_settings(changed, options.settings);
   std::vector<std::string> refusals;
   for (const RideEnd& end : ride.ends) {
+    if (!end.motion.travel_known) {
+      refusals.push_back(fmt::format("{}: a replay takes the travel, and {}",
+                                     bike::to_string(end.name), end.motion.travel_withheld));
+      continue;
+    }
     if (!replayable(ride, end.name, refusals)) continue;
     const std::vector<sim::VehicleEnd> candidates{sim::VehicleEnd::from(changed, end.name)};
     sim::ReplayOptions replay_options;
@@ -122,6 +127,9 @@ ClickMap click_map(const ReplayOptions& options, const std::string& knobs) {
   const auto end = std::find_if(ride.ends.begin(), ride.ends.end(),
                                 [&](const RideEnd& one) { return one.name == first.end; });
   if (end == ride.ends.end()) refuse_map(knobs, "this end was not logged");
+  if (!end->motion.travel_known)
+    throw core::JobError({options.ride.log_path}, end->motion.travel_withheld,
+                         "put a potentiometer beside the units for a map");
 
   const sim::ReplayInput input = input_of(ride, *end, options.splits);
   bike::Bike changed = ride.bike;

@@ -50,12 +50,15 @@ Review review(const ReviewOptions& options) {
     if (end.apparent && !end.apparent->problem.empty())
       result.notes.push_back(
           fmt::format("{} from the ride alone: {}", bike::part(end.name), end.apparent->problem));
+  result.hand_arm = ride.hand_arm;
   result.airtimes = airtimes_of(ride);
-  if (ride.ends.size() == 2 && ride.ends[0].riding_s > 0.0 && ride.ends[1].riding_s > 0.0)
+  if (ride.ends.size() == 2 && ride.ends[0].riding_s > 0.0 && ride.ends[1].riding_s > 0.0 &&
+      ride.ends[0].motion.travel_known && ride.ends[1].motion.travel_known)
     result.front_rear = front_beside_rear(ride, result.ends);
 
   std::vector<advice::EndRide> views;
   for (std::size_t i = 0; i < ride.ends.size(); ++i) {
+    if (!ride.ends[i].motion.travel_known) continue;
     views.push_back(advice_view(ride.bike, ride.ends[i], result.ends[i], dampers[i]));
     views.back().airtimes = &result.airtimes;
     views.back().bike = &ride.bike;
@@ -63,7 +66,11 @@ Review review(const ReviewOptions& options) {
   }
   advice::AdviceOptions advice_options;
   advice_options.by_rule = options.advice_by_rule;
-  result.advice = advice::advise(views, ride.bike.aims, advice_options);
+  if (!views.empty()) result.advice = advice::advise(views, ride.bike.aims, advice_options);
+  if (views.empty())
+    result.advice.leave_it =
+        "no end's travel is known well enough to advise a click: put a potentiometer beside the "
+        "units";
   result.missing = bike::what_is_missing(ride.bike);
   return result;
 }

@@ -4,6 +4,7 @@
 
 #include <algorithm>
 #include <array>
+#include <iterator>
 #include <utility>
 
 #include "archived_ride.hpp"
@@ -11,9 +12,9 @@
 #include "clickwise/bike/bike_file.hpp"
 #include "clickwise/core/parallel.hpp"
 #include "clickwise/logs/log.hpp"
-#include "clickwise/motion/potentiometer.hpp"
 #include "clickwise/motion/riding.hpp"
 #include "clickwise/motion/sprung_accel.hpp"
+#include "end_motion.hpp"
 
 namespace clickwise::workflow {
 
@@ -21,18 +22,6 @@ namespace {
 
 bool has_sprung_accel(const bike::Bike& bike, bike::EndName name) {
   return bike.end(name) && bike.end(name)->sprung_accel;
-}
-
-// The columns a review reads: each end's sensor, then the speed where there is one, then the
-// accelerometers of the sprung sides.
-std::vector<bike::ColumnRef> wanted_columns(const bike::Bike& bike) {
-  std::vector<bike::ColumnRef> columns;
-  for (const bike::EndName name : bike::both_ends)
-    if (bike.end(name)) columns.push_back(bike.end(name)->sensor.column);
-  if (bike.log.speed) columns.push_back(bike.log.speed->column);
-  for (const bike::EndName name : bike::both_ends)
-    if (has_sprung_accel(bike, name)) columns.push_back(bike.end(name)->sprung_accel->column);
-  return columns;
 }
 
 std::vector<bike::EndName> ends_of(const bike::Bike& bike) {
@@ -56,10 +45,24 @@ SprungAccels take_sprung_accels(const bike::Bike& bike, const motion::UniformClo
   return taken;
 }
 
-std::vector<double> speed_on_base(const bike::Bike& bike, const run::Recording& recording,
+// The units' noise is no sign that a travel sensor is stuck, either.
+run::Recording take_units(const ColumnPlan& plan, run::Recording& recording) {
+  run::Recording units;
+  units.t_s = recording.t_s;
+  units.stretches = recording.stretches;
+  units.interval_s = recording.interval_s;
+  const auto first = recording.channels.begin() + static_cast<std::ptrdiff_t>(plan.first_unit);
+  units.channels.assign(std::make_move_iterator(first),
+                        std::make_move_iterator(recording.channels.end()));
+  recording.channels.resize(plan.first_unit);
+  return units;
+}
+
+std::vector<double> speed_on_base(const bike::Bike& bike, const ColumnPlan& plan,
+                                  const run::Recording& recording,
                                   const motion::UniformClock& clock) {
-  if (!bike.log.speed) return {};
-  std::vector<double> speed = motion::on_base(recording, recording.channels.size() - 1, clock);
+  if (!plan.speed) return {};
+  std::vector<double> speed = motion::on_base(recording, *plan.speed, clock);
   for (double& value : speed) value *= bike.log.speed->metres_per_second_per_unit;
   return speed;
 }
@@ -77,24 +80,20 @@ constexpr double far_outside_share = 0.25;  // of the stroke
 constexpr double mostly = 0.5;
 
 // One column cannot be two things: a slip of the bike file that would give plausible nonsense.
-void refuse_shared_columns(const bike::Bike& bike) {
-  std::vector<std::pair<std::string, bike::ColumnRef>> taken;
-  const auto take = [&](const std::string& key, const bike::ColumnRef& column) {
-    for (const auto& [other, its_column] : taken)
-      if (its_column == column)
-        throw core::InputError({bike.file}, other + " and " + key + " both name " + column.label(),
+void refuse_shared_columns(const bike::Bike& bike, const ColumnPlan& plan) {
+  std::vector<NamedColumn> taken;
+  const auto take = [&](const NamedColumn& one) {
+    for (const NamedColumn& other : taken)
+      if (other.column == one.column)
+        throw core::InputError({bike.file},
+                               other.key + " and " + one.key + " both name " + one.column.label(),
                                "give each the column of its own; clickwise inspect lists them");
-    taken.emplace_back(key, column);
+    taken.push_back(one);
   };
-  if (bike.log.time) take("log.time", bike.log.time->column);
-  if (bike.log.speed) take("log.speed", bike.log.speed->column);
-  for (const bike::EndName name : bike::both_ends)
-    if (bike.end(name))
-      take(std::string(bike::to_string(name)) + ".sensor", bike.end(name)->sensor.column);
-  for (const bike::EndName name : bike::both_ends)
-    if (has_sprung_accel(bike, name))
-      take(std::string(bike::to_string(name)) + ".sprung_accel",
-           bike.end(name)->sprung_accel->column);
+  if (bike.log.time) take({"log.time", bike.log.time->column});
+  if (plan.speed) take(plan.columns[*plan.speed]);
+  for (std::size_t i = 0; i < plan.columns.size(); ++i)
+    if (plan.speed != i) take(plan.columns[i]);
 }
 
 void refuse_impossible_rate(double rate_hz, const bike::Bike& bike, const std::string& path) {
@@ -110,6 +109,7 @@ void refuse_impossible_rate(double rate_hz, const bike::Bike& bike, const std::s
 // Travel that is mostly far outside the stroke is no travel: that end is left out, and it is said.
 void leave_out_nonsense(const bike::End& end, RideEnd& ride, run::FaultLedger& faults,
                         std::vector<std::string>& notes) {
+  if (!ride.motion.travel_known) return;
   const double room_m = far_outside_share * end.stroke_m;
   std::size_t usable = 0;
   std::size_t outside = 0;
@@ -146,9 +146,9 @@ Ride ride_of_log(const RideOptions& options) {
                            "add --bike BIKE.toml; clickwise inspect LOG offers one to start from");
   Ride ride;
   ride.bike = bike::read_bike_file(options.bike_path);
-  refuse_shared_columns(ride.bike);
-  run::Recording recording =
-      logs::read_log(options.log_path, ride.bike.log, wanted_columns(ride.bike));
+  const ColumnPlan plan = plan_columns(ride.bike);
+  refuse_shared_columns(ride.bike, plan);
+  run::Recording recording = logs::read_log(options.log_path, ride.bike.log, plan.refs());
   const motion::UniformClock clock = motion::uniform_clock(recording);
   refuse_impossible_rate(clock.base.rate_hz, ride.bike, options.log_path);
   ride.log.name = recording.name;
@@ -157,18 +157,18 @@ Ride ride_of_log(const RideOptions& options) {
   ride.log.samples = recording.t_s.size();
   ride.log.faults = recording.faults;
   SprungAccels accels = take_sprung_accels(ride.bike, clock, recording);
+  const run::Recording units = take_units(plan, recording);
   ride.notes = recording.notes;
 
   const std::vector<bike::EndName> names = ends_of(ride.bike);
-  std::vector<motion::PotentiometerMotion> motions(names.size());
+  std::vector<EndMotion> motions(names.size());
   motion::MotionOptions motion_options;
   motion_options.smooth_span_s = options.smooth_span_s;
   core::parallel_for(names.size() + 1, [&](std::size_t i) {
     if (i == names.size())
-      ride.speed_m_s = speed_on_base(ride.bike, recording, clock);
+      ride.speed_m_s = speed_on_base(ride.bike, plan, recording, clock);
     else
-      motions[i] =
-          motion::from_potentiometer(recording, i, *ride.bike.end(names[i]), clock, motion_options);
+      motions[i] = end_motion(ride.bike, names[i], {recording, units}, plan, clock, motion_options);
   });
   for (std::size_t i = 0; i < names.size(); ++i) {
     ride.log.faults.merge(motions[i].faults);
@@ -186,6 +186,7 @@ Ride ride_of_log(const RideOptions& options) {
     archive::round_to_stored(ride.ends[i].felt_m_s2);
   });
   find_riding(ride);
+  if (plan.hand_accel) ride.hand_arm = hand_arm(ride, units, *plan.hand_accel, clock);
   return ride;
 }
 

@@ -39,6 +39,10 @@ struct Motion {
   double reading_noise_m = 0.0;     // rms noise of a single travel reading
   double cutoff_hz = 0.0;           // of the smoother, median over the ride
   std::string smoothing;            // one sentence: what was used
+  // Whether the travel is known well enough for figures of it; if not, why: a sentence. It then
+  // only serves the ratio and the order of events.
+  bool travel_known = true;
+  std::string travel_withheld;
 };
 
 }  // namespace clickwise::run

@@ -35,6 +35,7 @@ struct EndReview {
   bands::VelocityBands bands;
   SplitSource compression_split_source = SplitSource::fallback;
   SplitSource rebound_split_source = SplitSource::fallback;
+  std::string travel_withheld;  // why travel, bottom-outs, top-outs and trains are empty; or empty
   bands::TravelUse travel;
   std::vector<run::EndStop> bottom_outs;
   std::vector<run::EndStop> top_outs;
@@ -56,6 +57,7 @@ struct Review {
   LogSummary log;
   std::vector<EndReview> ends;
   std::optional<FrontRear> front_rear;
+  std::optional<HandArm> hand_arm;
   std::vector<run::Airtime> airtimes;  // of both ends together, or of the one that was logged
   advice::Advice advice;
   std::vector<std::string> missing;  // what each further key of the bike file would bring
