@@ -18,14 +18,14 @@ constexpr double most_lag_s = 0.2;
 constexpr double least_correlation = 0.8;
 constexpr double tellable_samples = 0.3;  // a smaller lag is not worth a word
 constexpr double tellable_ppm = 40.0;
+constexpr double clear_sigmas = 5.0;
 
 // The part of the turning that both units share, three channels.
-std::array<std::vector<double>, 3> shared_turning(const UnitSeries& unit, const Vector3d& axis,
-                                                  bool without_axis) {
+std::array<std::vector<double>, 3> shared_turning(const UnitSeries& unit, const Vector3d& bearing) {
   std::array<std::vector<double>, 3> out;
   for (std::size_t i = 0; i < unit.gyro.size(); ++i) {
     Vector3d value = unit.usable[i] ? unit.gyro[i] : Vector3d::Constant(NAN);
-    if (without_axis) value -= axis * axis.dot(value);
+    value -= bearing * bearing.dot(value);
     for (std::size_t c = 0; c < 3; ++c) out[c].push_back(value[static_cast<Eigen::Index>(c)]);
   }
   return out;
@@ -42,8 +42,8 @@ LagLine fit_lags(const std::array<std::vector<double>, 3>& early,
   const auto window = static_cast<std::size_t>(window_s * rate_hz);
   const auto most = static_cast<std::size_t>(std::ceil(most_lag_s * rate_hz));
   const std::size_t n = early[0].size();
-  Eigen::Matrix2d a = Eigen::Matrix2d::Zero();
-  Eigen::Vector2d b = Eigen::Vector2d::Zero();
+  std::vector<Eigen::Vector2d> rows;
+  std::vector<double> lags;
   LagLine line;
   for (std::size_t first = 0; first + window <= n; first += window) {
     std::vector<std::span<const double>> from, to;
@@ -55,18 +55,27 @@ LagLine fit_lags(const std::array<std::vector<double>, 3>& early,
     if (!(lag.correlation > least_correlation)) continue;
     const Eigen::Vector2d row(
         1.0, static_cast<double>(first + window / 2) - 0.5 * static_cast<double>(n));
-    a += row * row.transpose();
-    b += row * lag.samples;
-    ++line.windows;
+    rows.push_back(row);
+    lags.push_back(lag.samples);
   }
-  if (line.windows == 0) return line;
-  if (line.windows < 4) {
-    line.lag_samples = b[0] / a(0, 0);
-    return line;
+  line.windows = static_cast<int>(lags.size());
+  if (line.windows < 4) return line;
+  Eigen::Matrix2d a = Eigen::Matrix2d::Zero();
+  Eigen::Vector2d b = Eigen::Vector2d::Zero();
+  for (std::size_t k = 0; k < rows.size(); ++k) {
+    a += rows[k] * rows[k].transpose();
+    b += rows[k] * lags[k];
   }
-  const Eigen::Vector2d fit = a.ldlt().solve(b);
-  line.lag_samples = fit[0];
-  line.drift = fit[1];
+  const Eigen::Matrix2d inverse = a.inverse();
+  const Eigen::Vector2d fit = inverse * b;
+  double squares = 0.0;
+  for (std::size_t k = 0; k < rows.size(); ++k) squares += std::pow(lags[k] - rows[k].dot(fit), 2);
+  const double scatter = squares / static_cast<double>(line.windows - 2);
+  const auto clear = [&](Eigen::Index which) {
+    return std::abs(fit[which]) > clear_sigmas * std::sqrt(scatter * inverse(which, which)) + 1e-12;
+  };
+  if (clear(0)) line.lag_samples = fit[0];
+  if (clear(1)) line.drift = fit[1];
   return line;
 }
 
@@ -98,11 +107,10 @@ void shift(UnitSeries& unit, const LagLine& line) {
 
 }  // namespace
 
-void align_units(PairSeries& series, const bike::ImuPair& pair, double rate_hz) {
+void align_units(PairSeries& series, const Vector3d& bearing, double rate_hz) {
   if (series.upper.gyro.size() < 2 || series.lower.gyro.empty()) return;
-  const Vector3d axis(pair.axis.data());
-  const LagLine line = fit_lags(shared_turning(series.upper, axis, pair.swinging()),
-                                shared_turning(series.lower, axis, pair.swinging()), rate_hz);
+  const LagLine line = fit_lags(shared_turning(series.upper, bearing),
+                                shared_turning(series.lower, bearing), rate_hz);
   if (line.windows == 0) return;
   const bool drifts = std::abs(line.drift) * 1e6 > tellable_ppm;
   if (!drifts && std::abs(line.lag_samples) < tellable_samples) return;

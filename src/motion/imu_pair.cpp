@@ -131,16 +131,21 @@ std::string impossible_swing(const PairSeries& series, const bike::End& end, dou
 
 std::string measure(PairSeries& series, const bike::End& end, std::optional<double> mass,
                     const UniformClock& clock, SlideSettings& settings, ImuMotion& result) {
-  const auto usable = both_usable(series);
+  const double rate_hz = clock.base.rate_hz;
   Slid slid;
+  std::vector<std::uint8_t> usable;
   if (end.imu->swinging()) {
+    align_units(series, bearings(series, *end.imu).lower, rate_hz);
+    usable = both_usable(series);
     if (auto wrong = impossible_swing(series, end, settings.interval_s); !wrong.empty())
       return wrong;
-    slid = swing(series, end, settings);
+    slid = swing(series, bearings(series, *end.imu), end, settings);
     if (auto wrong = reversed_swing(slid, usable); !wrong.empty()) return wrong;
     result.motion.smoothing =
-        fmt::format("two gyros through a Kalman smoother at {:.0f} Hz", clock.base.rate_hz);
+        fmt::format("two gyros through a Kalman smoother at {:.0f} Hz", rate_hz);
   } else {
+    align_units(series, Eigen::Vector3d::Zero(), rate_hz);
+    usable = both_usable(series);
     const Axial along = axial(series, *end.imu, settings.sag_m);
     std::optional<double> mass_ratio;
     if (mass && end.unsprung_mass_kg) mass_ratio = *mass / *end.unsprung_mass_kg;
@@ -169,7 +174,6 @@ ImuMotion from_imu_pair(const run::Recording& recording, const PairChannels& cha
   PairSeries series = pair_series(recording, channels, *end.imu, clock);
   std::string wrong = contradiction(series, end);
   if (wrong.empty()) {
-    align_units(series, *end.imu, clock.base.rate_hz);
     SlideSettings settings = settings_for(end, sprung_mass_kg, clock.base);
     if (second.potentiometer != nullptr) {
       settings.seen_travel_m = second.potentiometer->travel_m;

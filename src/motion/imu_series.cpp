@@ -17,6 +17,7 @@ using Eigen::Vector3d;
 constexpr double hole_steps = 2.6;      // of a channel's own step: longer is a hole
 constexpr double frozen_s = 0.1;        // three readings of a unit that do not change so long
 constexpr double range_share = 0.9999;  // of the largest reading: at the range
+constexpr double touching = 1e-6;       // weight of a reading in a base sample that counts
 constexpr int range_repeats = 3;        // so many neighbours there make it a range
 
 struct Placed {
@@ -43,10 +44,9 @@ double own_step(const Placed& placed) {
   return steps.empty() ? 1.0 : std::max(1.0, core::median(std::move(steps)));
 }
 
-std::vector<double> lay(const run::Recording& recording, std::size_t channel,
-                        const UniformClock& clock, double si_per_unit) {
-  std::vector<double> out(clock.base.samples, std::numeric_limits<double>::quiet_NaN());
-  const Placed placed = readings_of(recording, channel, clock);
+// Calls see(j, i, part) for each base sample j between the readings i and i + 1 of a channel.
+template <class See>
+void between_readings(const Placed& placed, std::size_t samples, See see) {
   const double longest = hole_steps * own_step(placed);
   for (std::size_t i = 0; i + 1 < placed.place.size(); ++i) {
     const double from = placed.place[i];
@@ -54,11 +54,19 @@ std::vector<double> lay(const run::Recording& recording, std::size_t channel,
     if (!(to > from) || to - from > longest) continue;
     for (double at = std::max(0.0, std::ceil(from)); at <= to; at += 1.0) {
       const auto j = static_cast<std::size_t>(at);
-      if (j >= out.size()) break;
-      const double part = (at - from) / (to - from);
-      out[j] = si_per_unit * (placed.value[i] + part * (placed.value[i + 1] - placed.value[i]));
+      if (j >= samples) break;
+      see(j, i, (at - from) / (to - from));
     }
   }
+}
+
+std::vector<double> lay(const run::Recording& recording, std::size_t channel,
+                        const UniformClock& clock, double si_per_unit) {
+  std::vector<double> out(clock.base.samples, std::numeric_limits<double>::quiet_NaN());
+  const Placed placed = readings_of(recording, channel, clock);
+  between_readings(placed, out.size(), [&](std::size_t j, std::size_t i, double part) {
+    out[j] = si_per_unit * (placed.value[i] + part * (placed.value[i + 1] - placed.value[i]));
+  });
   return out;
 }
 
@@ -72,15 +80,14 @@ std::vector<Vector3d> three(const run::Recording& recording, std::size_t first,
   return out;
 }
 
-// The range of a component: the bike file's, or a largest value that several neighbours share.
-double found_range(const std::vector<Vector3d>& series, Eigen::Index component) {
+// The range of a channel: a largest reading that several neighbours share; infinite without.
+double found_range(const std::vector<double>& readings) {
   double most = 0.0;
-  for (const Vector3d& value : series)
-    if (std::isfinite(value[component])) most = std::max(most, std::abs(value[component]));
+  for (const double value : readings) most = std::max(most, std::abs(value));
   int run = 0;
   int runs = 0;
-  for (const Vector3d& value : series) {
-    run = std::abs(value[component]) >= range_share * most ? run + 1 : 0;
+  for (const double value : readings) {
+    run = std::abs(value) >= range_share * most ? run + 1 : 0;
     runs += run == range_repeats ? 1 : 0;
   }
   return most > 0.0 && runs > 0 ? most : std::numeric_limits<double>::infinity();
@@ -98,25 +105,29 @@ void count_stretches(const std::vector<std::uint8_t>& mask, run::FaultKind kind,
   faults.add(kind, channel, stretches, static_cast<double>(samples) * interval_s);
 }
 
-void find_clipped(UnitSeries& unit, const bike::ImuPair& pair, const std::string& channel,
-                  double interval_s, run::FaultLedger& faults) {
-  const std::size_t n = unit.accel.size();
-  unit.clipped.assign(unit.usable.size(), 0);
-  if (n == 0) return;
+// The axial channel tells; on the base, a sample is clipped where a clipped reading touches it.
+void find_clipped(UnitSeries& unit, const run::Recording& recording, std::size_t first_channel,
+                  const bike::ImuPair& pair, const UniformClock& clock, run::FaultLedger& faults) {
   Eigen::Index main = 0;
   Vector3d(pair.axis.data()).cwiseAbs().maxCoeff(&main);
-  const double found = found_range(unit.accel, main);
+  const std::size_t channel = first_channel + static_cast<std::size_t>(main);
+  const Placed placed = readings_of(recording, channel, clock);
+  const double found = found_range(placed.value) * pair.metres_per_second2_per_unit;
   unit.range_m_s2 = std::min(found, pair.range_m_s2.value_or(found));
   if (!std::isfinite(unit.range_m_s2)) return;
-  std::vector<std::uint8_t> mask(n, 0);
+  const double limit = range_share * unit.range_m_s2 / pair.metres_per_second2_per_unit;
   const double sign = pair.axis[static_cast<std::size_t>(main)] < 0.0 ? -1.0 : 1.0;
-  for (std::size_t i = 0; i < n; ++i) {
-    const double value = unit.accel[i][main];
-    if (!(std::abs(value) >= range_share * unit.range_m_s2)) continue;
-    mask[i] = 1;
-    unit.clipped[i] = sign * value > 0.0 ? 1 : -1;
-  }
-  count_stretches(mask, run::FaultKind::saturated, channel, interval_s, faults);
+  std::vector<std::uint8_t> mask(unit.clipped.size(), 0);
+  between_readings(placed, mask.size(), [&](std::size_t j, std::size_t i, double part) {
+    for (const auto& [reading, weight] :
+         {std::pair{placed.value[i], 1.0 - part}, std::pair{placed.value[i + 1], part}}) {
+      if (!(std::abs(reading) >= limit) || weight < touching) continue;
+      mask[j] = 1;
+      unit.clipped[j] = sign * reading > 0.0 ? 1 : -1;
+    }
+  });
+  count_stretches(mask, run::FaultKind::saturated, recording.channels[channel].name,
+                  clock.base.interval_s(), faults);
 }
 
 bool same(const std::vector<Vector3d>& series, std::size_t i) {
@@ -158,7 +169,9 @@ UnitSeries unit_series(const run::Recording& recording, const UnitChannels& chan
   const std::string channel =
       recording.channels.at(channels.accel ? *channels.accel : *channels.gyro).name;
   mask_dead(unit, channel, clock.base.rate_hz, faults);
-  find_clipped(unit, pair, channel, clock.base.interval_s(), faults);
+  unit.clipped.assign(clock.base.samples, 0);
+  if (channels.accel && !pair.swinging())
+    find_clipped(unit, recording, *channels.accel, pair, clock, faults);
   return unit;
 }
 

@@ -36,7 +36,8 @@ PairSeries pair_series(const run::Recording& recording, const PairChannels& chan
 std::string contradiction(const PairSeries& series, const bike::End& end);
 
 // Lag and drift of the lower unit against the upper, from what both gyros feel of the frame's
-// turning; found, told in a note and taken out. The axis is left out where the link turns about it.
-void align_units(PairSeries& series, const bike::ImuPair& pair, double rate_hz);
+// turning; where they are clear of their scatter over windows of 12 s, told in a note and taken
+// out. `bearing`: of a link in the lower unit's frame, left out of the comparison; zero: a shaft.
+void align_units(PairSeries& series, const Eigen::Vector3d& bearing, double rate_hz);
 
 }  // namespace clickwise::motion

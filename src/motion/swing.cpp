@@ -1,7 +1,9 @@
 #include "swing.hpp"
 
+#include <Eigen/Dense>
 #include <algorithm>
 #include <cmath>
+#include <optional>
 
 #include "clickwise/bike/spring.hpp"
 #include "clickwise/core/units.hpp"
@@ -23,6 +25,8 @@ constexpr double bias_walk = 1e-9;  // (rad/s)^2/s
 constexpr double unusable_rad_s = 6.0;
 constexpr double gain_share = 0.012;  // mounting, ratio and arm: of the velocity
 constexpr int table_points = 400;
+constexpr double least_alignment = 0.8;       // cosine between a bearing found and the file's
+constexpr double least_turning_rad_s = 0.03;  // rms about every axis
 
 // Angle over shaft travel and back, from the ratio and the swing table.
 struct Geometry {
@@ -44,11 +48,11 @@ Geometry geometry_of(const bike::End& end) {
   return {{shaft, angle}, {angle, shaft}, {angle, slope}};
 }
 
-std::vector<double> swing_rate(const PairSeries& series, const Eigen::Vector3d& axis) {
+std::vector<double> swing_rate(const PairSeries& series, const Bearings& bearings) {
   std::vector<double> rate(series.upper.gyro.size(), 0.0);
   for (std::size_t i = 0; i < rate.size(); ++i)
     if (series.upper.usable[i] && series.lower.usable[i])
-      rate[i] = axis.dot(series.lower.gyro[i] - series.upper.gyro[i]);
+      rate[i] = bearings.lower.dot(series.lower.gyro[i]) - bearings.upper.dot(series.upper.gyro[i]);
   return rate;
 }
 
@@ -66,12 +70,58 @@ double rate_noise(const std::vector<double>& rate) {
   return std::max(1e-4, blocks[blocks.size() / 10]);
 }
 
+// Mean of d d' over the usable samples, d about its mean.
+template <class Difference>
+Eigen::Matrix3d scatter_of(const PairSeries& series, Difference difference) {
+  Eigen::Vector3d mean = Eigen::Vector3d::Zero();
+  Eigen::Matrix3d square = Eigen::Matrix3d::Zero();
+  double count = 0.0;
+  for (std::size_t i = 0; i < series.upper.gyro.size(); ++i) {
+    if (!series.upper.usable[i] || !series.lower.usable[i]) continue;
+    const Eigen::Vector3d d = difference(i);
+    mean += d;
+    square += d * d.transpose();
+    count += 1.0;
+  }
+  if (!(count > 0.0)) return square;
+  mean /= count;
+  return square / count - mean * mean.transpose();
+}
+
+// Least squares of the lower unit's turning across its bearing on the upper unit's turning: the two
+// rows span the plane across the bearing in the upper frame. Nothing without enough turning.
+std::optional<Eigen::Vector3d> upper_bearing(const PairSeries& series,
+                                             const Eigen::Vector3d& lower) {
+  const Eigen::Vector3d first = lower.unitOrthogonal();
+  const Eigen::Vector3d second = lower.cross(first);
+  const Eigen::Matrix3d turning =
+      scatter_of(series, [&](std::size_t i) { return series.upper.gyro[i]; });
+  const Eigen::SelfAdjointEigenSolver<Eigen::Matrix3d> solver(turning);
+  if (!(solver.eigenvalues()[0] > least_turning_rad_s * least_turning_rad_s)) return std::nullopt;
+  const auto row = [&](const Eigen::Vector3d& across) -> Eigen::Vector3d {
+    const Eigen::Matrix3d with = scatter_of(series, [&](std::size_t i) {
+      return Eigen::Vector3d(series.upper.gyro[i] + across * across.dot(series.lower.gyro[i]));
+    });
+    const Eigen::Matrix3d without = scatter_of(series, [&](std::size_t i) {
+      return Eigen::Vector3d(series.upper.gyro[i] - across * across.dot(series.lower.gyro[i]));
+    });
+    // (u + a y)(u + a y)' - (u - a y)(u - a y)' = 2 (u a' + a u') y: times a, less its own part.
+    const Eigen::Matrix3d cross = 0.5 * (with - without);
+    const Eigen::Vector3d product = cross * across - 0.5 * across * across.dot(cross * across);
+    return turning.ldlt().solve(product);
+  };
+  const Eigen::Vector3d bearing = row(first).cross(row(second));
+  if (!(bearing.norm() > 0.5)) return std::nullopt;
+  return bearing.normalized();
+}
+
 class SwingFilter {
 public:
-  SwingFilter(const PairSeries& series, const bike::End& end, const SlideSettings& settings)
+  SwingFilter(const PairSeries& series, const Bearings& bearings, const bike::End& end,
+              const SlideSettings& settings)
       : settings_(settings),
         geometry_(geometry_of(end)),
-        rate_(swing_rate(series, Eigen::Vector3d(end.imu->axis.data()))),
+        rate_(swing_rate(series, bearings)),
         noise_(rate_noise(rate_)),
         usable_(rate_.size()),
         outside_(rate_.size(), 0) {
@@ -160,8 +210,26 @@ private:
 
 }  // namespace
 
-Slid swing(const PairSeries& series, const bike::End& end, const SlideSettings& settings) {
-  return SwingFilter(series, end, settings).run();
+Bearings bearings(const PairSeries& series, const bike::ImuPair& pair) {
+  const Eigen::Vector3d nominal(pair.axis.data());
+  Bearings out{nominal, nominal};
+  const Eigen::Matrix3d differences = scatter_of(series, [&](std::size_t i) {
+    return Eigen::Vector3d(series.lower.gyro[i] - series.upper.gyro[i]);
+  });
+  const Eigen::SelfAdjointEigenSolver<Eigen::Matrix3d> solver(differences);
+  const Eigen::Vector3d principal = solver.eigenvectors().col(2);
+  if (solver.eigenvalues()[2] < 9.0 * solver.eigenvalues()[1] ||
+      std::abs(principal.dot(nominal)) < least_alignment)
+    return out;
+  out.lower = principal.dot(nominal) < 0.0 ? Eigen::Vector3d(-principal) : principal;
+  out.upper = upper_bearing(series, out.lower).value_or(nominal);
+  if (out.upper.dot(nominal) < least_alignment) out.upper = nominal;
+  return out;
+}
+
+Slid swing(const PairSeries& series, const Bearings& bearings, const bike::End& end,
+           const SlideSettings& settings) {
+  return SwingFilter(series, bearings, end, settings).run();
 }
 
 }  // namespace clickwise::motion
