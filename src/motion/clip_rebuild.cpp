@@ -8,11 +8,11 @@ namespace clickwise::motion {
 namespace {
 
 constexpr double reading_noise_m_s2 = 0.05;
-constexpr double rough_share = 0.15;
+constexpr double rough_share = 0.05;
 constexpr double rough_memory = 8.0;  // samples
 constexpr double most_rise_m_s2 = 600.0;
-constexpr double rise_share = 0.6;
-constexpr double rise_floor_m_s2 = 60.0;
+constexpr double rise_share = 0.8;
+constexpr double rise_floor_m_s2 = 100.0;
 constexpr double unusable_m_s2 = 100.0;
 constexpr double pulled_m_s2 = -6.0;
 constexpr double pushed_m_s2 = 60.0;

@@ -22,6 +22,8 @@ constexpr double falling_m_s2 = 3.0;
 constexpr double falling_s = 0.08;
 constexpr double end_margin_m = 3e-3;
 constexpr double end_sigma_m = 0.022;
+// Of the velocity: against the truth of invented rides (docs/accuracy.md).
+constexpr double sigma_scale = 0.8;
 constexpr double bias_walk = 1e-6;  // (m/s^2)^2/s
 
 enum class Place : std::uint8_t { inside, extended, compressed, topped_out, falling };
@@ -169,7 +171,8 @@ private:
       slid_.travel_m[i] = beliefs[i].mean[0];
       slid_.velocity_m_s[i] = beliefs[i].mean[1];
       slid_.travel_sigma_m[i] = std::sqrt(std::max(0.0, beliefs[i].covariance(0, 0)));
-      slid_.velocity_sigma_m_s[i] = std::sqrt(std::max(0.0, beliefs[i].covariance(1, 1)));
+      slid_.velocity_sigma_m_s[i] =
+          sigma_scale * std::sqrt(std::max(0.0, beliefs[i].covariance(1, 1)));
     }
   }
 
