@@ -6,7 +6,6 @@
 #include <cmath>
 
 #include "clickwise/core/units.hpp"
-#include "clickwise/signal/lag.hpp"
 #include "imu_series.hpp"
 
 namespace clickwise::motion {
@@ -80,19 +79,25 @@ std::string wrong_gravity(const UnitSeries& unit, const Vector3d& axis) {
   return {};
 }
 
-std::string wrong_gyro(const UnitSeries& unit) {
-  if (unit.gyro.empty()) return {};
-  const double rms = rms_about(unit.gyro, unit.usable, mean_of(unit.gyro, unit.usable));
+double turning_rms(const UnitSeries& unit) {
+  return unit.gyro.empty() ? 0.0
+                           : rms_about(unit.gyro, unit.usable, mean_of(unit.gyro, unit.usable));
+}
+
+// Both gyros have one unit, so the livelier one speaks: a frame may stand on a bench.
+std::string wrong_gyro(const PairSeries& series) {
+  if (series.upper.gyro.empty()) return {};
+  const double rms = std::max(turning_rms(series.upper), turning_rms(series.lower));
   if (rms > plausible_rms_rad_s)
     return fmt::format(
-        "the {} gyro turns by {:.3g} rad/s rms, which no bike does: its readings "
-        "are in deg/s, so write gyro_unit = \"deg/s\"",
-        unit.name, rms);
+        "its gyros turn by {:.3g} rad/s rms, which no bike does: their readings are in deg/s, so "
+        "write gyro_unit = \"deg/s\"",
+        rms);
   if (rms < dull_rms_rad_s)
     return fmt::format(
-        "the {} gyro turns by {:.2g} deg/s rms, less than a ridden bike: its "
-        "readings are in rad/s, so write gyro_unit = \"rad/s\"",
-        unit.name, rms / core::radians_per_degree);
+        "its gyros turn by {:.2g} deg/s rms, less than a ridden bike: their readings are in rad/s, "
+        "so write gyro_unit = \"rad/s\"",
+        rms / core::radians_per_degree);
   return {};
 }
 
@@ -124,9 +129,7 @@ std::string contradiction(const PairSeries& series, const bike::End& end) {
     if (const auto wrong = wrong_gravity(series.lower, axis); !wrong.empty()) return wrong;
     if (const auto wrong = swapped(series, axis); !wrong.empty()) return wrong;
   }
-  for (const UnitSeries* unit : {&series.upper, &series.lower})
-    if (const auto wrong = wrong_gyro(*unit); !wrong.empty()) return wrong;
-  return {};
+  return wrong_gyro(series);
 }
 
 }  // namespace clickwise::motion
