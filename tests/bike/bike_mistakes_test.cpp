@@ -119,8 +119,8 @@ TEST_CASE("mistakes in masses and ends are refused where they stand", "[bike]") 
        "from 0.1 to 85 mm"},
       {"compression_mm_s = 700.0", "compression_mm_s = @0", "front.split.compression_mm_s = 0",
        "mm/s"},
-      {"kind = \"potentiometer\"", "kind = @\"imu_pair\"", "front.sensor.kind = \"imu_pair\"",
-       "not read by this version"},
+      {"kind = \"potentiometer\"", "kind = \"imu_pair\"", "front.sensor",
+       "upper = ", "[front.sensor]"},
       {"kind = \"potentiometer\"", "kind = @\"potentiometre\"", "front.sensor.kind",
        "kind = \"potentiometer\""},
       {"[[210, 0.0], [3850, 170.0]]", "@[[210, 0.0]]", "front.sensor.calibration", "at least 2"},
@@ -210,4 +210,38 @@ TEST_CASE("wheels that weigh more than bike and rider are refused", "[bike]") {
   text = replaced(text, "unsprung_mass_kg = 2.9", "unsprung_mass_kg = 25.0");
   CHECK_THAT(refusal([&] { bike::parse_bike(text, "larch.toml"); }),
              StartsWith("larch.toml:8:1: chassis: rider and chassis weigh no more than"));
+}
+
+TEST_CASE("mistakes in an IMU pair are refused where they stand", "[bike]") {
+  const std::string pair =
+      "kind = \"imu_pair\"\nupper = { accel = [\"a\", \"b\", \"c\"] }\n"
+      "lower = { accel = [4, 5, 6] }\naccel_unit = \"g\"\naxis = [0, 0, 1]\n";
+  std::string text = minimal_bike_text;
+  const auto begin = text.find("kind");
+  const auto end = text.find("calibration");
+  text.replace(begin, text.find('\n', end) + 1 - begin, pair);
+  REQUIRE_NOTHROW(bike::parse_bike(text, "larch.toml"));
+  const std::vector<Mistake> mistakes{
+      {"[4, 5, 6]", "@[4, 5]", "front.sensor.lower.accel", "three columns"},
+      {"[4, 5, 6]", "@[4, 5, 5]", "front.sensor.lower.accel", "column 5 twice"},
+      {"axis = [0, 0, 1]", "axis = @[0, 0, 0]", "front.sensor.axis", "no direction"},
+      {"accel_unit = \"g\"", "accel_unit = @\"G\"", "front.sensor.accel_unit", "\"m/s2\""},
+      {"axis = [0, 0, 1]", "axis = [0, 0, 1]\n@spacing = 400", "front.sensor.spacing",
+       "did you mean spacing_mm?"},
+  };
+  for (const Mistake& mistake : mistakes) check(text, mistake);
+}
+
+TEST_CASE("a potentiometer may have an IMU pair beside it, and a link swings by its gyros",
+          "[bike]") {
+  const std::string units =
+      "[front.sensor.imu]\nupper = { gyro = [\"a\", \"b\", \"c\"] }\n"
+      "lower = { gyro = [4, 5, 6] }\ngyro_unit = \"deg/s\"\nswing_axis = [0, 2, 0]\narm_mm = 430\n";
+  const bike::Bike bike =
+      bike::parse_bike(std::string(minimal_bike_text) + "\n" + units, "larch.toml");
+  REQUIRE(bike.front->has_potentiometer());
+  REQUIRE(bike.front->imu);
+  CHECK(bike.front->imu->swinging());
+  CHECK(bike.front->imu->axis[1] == 1.0);
+  CHECK((*bike.front->imu->swing_m)(0.1) == Approx(0.043));
 }

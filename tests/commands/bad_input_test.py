@@ -341,7 +341,7 @@ class BadInput(program.Scratch):
                 ('unit = "us"', 'unit = "ns"', '"s", "ms", "us"'),
                 ('column = "fork_adc"', "column = 0", "from 1 to"),
                 ('column = "fork_adc"', "column = true", "bad.toml:26:10: "),
-                ('kind = "potentiometer"', 'kind = "imu_pair"', "not read by this version"),
+                ('kind = "potentiometer"', 'kind = "imu_pair"', "upper = "),
                 ('kind = "hydraulic"', 'kind = "hydralic"', '"hydraulic", "dyno", "assumed"'),
                 ("[log]", "[log]\npacked = {}", "log.packed.frame is missing"),
                 ("[log]", "[log]\nrate_hz = 1000", "not both"),
