@@ -45,6 +45,20 @@ SprungAccels take_sprung_accels(const bike::Bike& bike, const motion::UniformClo
   return taken;
 }
 
+// A unit slower than the log leaves cells empty by right: what is missing from units is counted where
+// their own rate is known.
+run::FaultLedger faults_of_log(const run::FaultLedger& read, const run::Recording& units) {
+  run::FaultLedger kept;
+  for (const run::Fault& fault : read.faults()) {
+    const bool of_unit =
+        std::any_of(units.channels.begin(), units.channels.end(),
+                    [&](const run::Channel& channel) { return channel.name == fault.channel; });
+    if (fault.kind != run::FaultKind::missing || !of_unit)
+      kept.add(fault.kind, fault.channel, fault.count, fault.seconds);
+  }
+  return kept;
+}
+
 // The units' noise is no sign that a travel sensor is stuck, either.
 run::Recording take_units(const ColumnPlan& plan, run::Recording& recording) {
   run::Recording units;
@@ -155,9 +169,9 @@ Ride ride_of_log(const RideOptions& options) {
   ride.log.duration_s = recording.t_s.back();
   ride.log.rate_hz = clock.base.rate_hz;
   ride.log.samples = recording.t_s.size();
-  ride.log.faults = recording.faults;
   SprungAccels accels = take_sprung_accels(ride.bike, clock, recording);
   const run::Recording units = take_units(plan, recording);
+  ride.log.faults = faults_of_log(recording.faults, units);
   ride.notes = recording.notes;
 
   const std::vector<bike::EndName> names = ends_of(ride.bike);
