@@ -71,7 +71,10 @@ void judge_travel(const Slid& slid, double doubt_m, const bike::End& end, run::M
   std::vector<double> sigma;
   for (std::size_t i = 0; i < motion.valid.size(); ++i)
     if (motion.valid[i]) sigma.push_back(slid.travel_sigma_m[i]);
-  if (sigma.empty()) return;
+  if (sigma.empty()) {
+    motion.travel_withheld = "the IMU pair gave no usable reading";
+    return;
+  }
   const double all_m = std::hypot(core::quantile(std::move(sigma), 0.9), doubt_m);
   motion.reading_noise_m = all_m;
   motion.travel_known = all_m <= tellable_travel_share * end.stroke_m;

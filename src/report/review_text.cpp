@@ -86,8 +86,7 @@ void write_advice(Writer& out, const advice::Advice& advice) {
         out.item(std::exchange(label, "            "), words);
     }
   }
-  for (const advice::Handover& handover : advice.handovers)
-    out.item("", handover_words(handover));
+  for (const advice::Handover& handover : advice.handovers) out.item("", handover_words(handover));
   for (const std::string& check : advice.checks) out.item("", "Check first: " + check + ".");
   for (const std::string& note : advice.notes) out.item("", "Note: " + note + ".");
 }

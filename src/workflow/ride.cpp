@@ -45,8 +45,8 @@ SprungAccels take_sprung_accels(const bike::Bike& bike, const motion::UniformClo
   return taken;
 }
 
-// A unit slower than the log leaves cells empty by right: what is missing from units is counted where
-// their own rate is known.
+// A unit slower than the log leaves cells empty by right: what is missing from units is counted
+// where their own rate is known.
 run::FaultLedger faults_of_log(const run::FaultLedger& read, const run::Recording& units) {
   run::FaultLedger kept;
   for (const run::Fault& fault : read.faults()) {

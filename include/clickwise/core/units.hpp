@@ -24,7 +24,11 @@ inline constexpr double radians_per_degree = 0.017453292519943295;
 
 inline constexpr double standard_atmosphere_pa = 101325.0;  // 10th CGPM 1954
 
-constexpr double from_mm(double mm) { return mm * metres_per_mm; }
-constexpr double to_mm(double metres) { return metres / metres_per_mm; }
+constexpr double from_mm(double mm) {
+  return mm * metres_per_mm;
+}
+constexpr double to_mm(double metres) {
+  return metres / metres_per_mm;
+}
 
 }  // namespace clickwise::core

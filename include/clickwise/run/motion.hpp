@@ -12,7 +12,9 @@
 namespace clickwise::run {
 
 // An exactly zero velocity counts as (low-speed) compression.
-inline bool is_compression(double velocity_m_s) { return velocity_m_s >= 0.0; }
+inline bool is_compression(double velocity_m_s) {
+  return velocity_m_s >= 0.0;
+}
 
 enum class Source { potentiometer, imu_pair, archive };
 

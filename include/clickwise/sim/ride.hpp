@@ -23,7 +23,7 @@ struct EndTruth {
   std::vector<double> damper_n;
   std::vector<double> felt_m_s2;  // specific force of the sprung mass: +g at rest
   std::vector<double> ground_m;   // under the wheel: the axle's path, less the radius
-  std::vector<double> sprung_m;  // height of the sprung mass
+  std::vector<double> sprung_m;   // height of the sprung mass
   std::vector<double> sprung_m_s;
   // What inertial units feel along the shaft, as means over one interval around the sample: the
   // sprung mass's acceleration with gravity, and the shaft's.

@@ -37,9 +37,9 @@ inline constexpr double hand_arm_limit_m_s2 = 5.0;
 
 // Vibration at the handlebar over the riding time.
 struct HandArm {
-  double weighted_rms_m_s2 = 0.0;   // a_hv: root of the sum of squares of the three axes
-  double daily_exposure_m_s2 = 0.0; // A(8), if this run were all of the day's riding
-  double rate_hz = 0.0;             // half of it is the highest frequency that was felt
+  double weighted_rms_m_s2 = 0.0;    // a_hv: root of the sum of squares of the three axes
+  double daily_exposure_m_s2 = 0.0;  // A(8), if this run were all of the day's riding
+  double rate_hz = 0.0;              // half of it is the highest frequency that was felt
 };
 
 struct Ride {
@@ -49,7 +49,7 @@ struct Ride {
   std::vector<std::uint8_t> riding;  // one per sample of the base
   std::vector<double> speed_m_s;     // ridden speed on the base, NaN: none; empty: not logged
   std::optional<HandArm> hand_arm;
-  std::vector<std::string> notes;    // what was guessed, what looked odd
+  std::vector<std::string> notes;  // what was guessed, what looked odd
 };
 
 struct RideOptions {
